@@ -108,7 +108,7 @@ function boilerDefaults(boiler: System['boiler']): Default[] {
       label: `Boiler: ${kind.label}`,
       value: kind.id,
       unit: null,
-      source: `${PRACTICE[0]?.toUpperCase()}${PRACTICE.slice(1)}; its efficiencies: ${kind.source}`,
+      source: `Common practice, no source; its efficiencies: ${kind.source}`,
     });
   if (boiler.efficiency === undefined)
     list.push({
