@@ -6,6 +6,37 @@ import { StepCounter } from './steps.ts';
 /** No value of the column has come yet on that day. */
 const UNSET = -2;
 
+/** The steps between instants as runs: step, count, step, count… */
+function runsOf(instants: Float64Array, backwards: boolean): number[] {
+  const runs: number[] = [];
+  const way = backwards ? -1 : 1;
+  let at = backwards ? instants.length - 1 : 0;
+  let step = NaN;
+  let count = 0;
+  for (let i = 1; i < instants.length; i++, at += way) {
+    const next = instants[at + way] - instants[at];
+    if (next === step) count++;
+    else {
+      if (count > 0) runs.push(step, count);
+      step = next;
+      count = 1;
+    }
+  }
+  if (count > 0) runs.push(step, count);
+  return runs;
+}
+
+/** Copies one column out of rows; false if a value is missing. */
+function transpose(rows: Float64Array, from: number, stride: number, values: Float64Array): boolean {
+  let full = true;
+  for (let i = 0, at = from; i < values.length; i++, at += stride) {
+    const value = rows[at];
+    if (value !== value) full = false;
+    values[i] = value;
+  }
+  return full;
+}
+
 /** A row belongs to a day that was handed over as whole: the rows are not in order of time. */
 export class OutOfOrder extends Error {
   constructor() {
@@ -199,13 +230,19 @@ export class Collector {
     this.from = Math.min(this.from, instants[0]);
     this.to = Math.max(this.to, instants[count - 1]);
     const backwards = this.way < 0 && !this.hold;
+    const runs = runsOf(instants, backwards);
     const columns = this.meanings.map((meaning, c): LayerColumn => {
       const values = new Float64Array(count);
-      for (let i = 0, at = c + 1; i < count; i++, at += stride) values[i] = rows[at];
+      const full = transpose(rows, c + 1, stride, values);
       const steps = this.steps[c];
-      for (let i = 0; i < count; i++) {
-        const k = backwards ? count - 1 - i : i;
-        if (values[k] === values[k]) steps.add(instants[k]);
+      if (full) {
+        steps.add(instants[backwards ? count - 1 : 0]);
+        for (let i = 0; i < runs.length; i += 2) steps.addRun(runs[i], runs[i + 1]);
+      } else {
+        for (let i = 0; i < count; i++) {
+          const k = backwards ? count - 1 - i : i;
+          if (values[k] === values[k]) steps.add(instants[k]);
+        }
       }
       const scale = day.scales[c];
       return { ...meaning, scale: scale === PLAIN ? null : Math.max(scale, 0), values };

@@ -55,6 +55,8 @@ export class Interpreter {
   private readonly daysAcross = new Map<string, string>();
   /** The cells that a row has. */
   readonly width: number;
+  /** The cells that a whole row has at the least: a day of 23 hours is shorter. */
+  private readonly leastWidth: number;
 
   /**
    * @param plan the column plan
@@ -85,6 +87,8 @@ export class Interpreter {
     this.labels = plan.columns.map((column) => columnName(column.column, header));
     this.heading = header;
     this.width = this.layout.width ?? firstRow.length;
+    const { firstAt, perDay } = this.layout;
+    this.leastWidth = firstAt < 0 ? this.width : firstAt + Math.ceil((perDay * 23) / 24);
   }
 
   /** Takes the next row of data. `torn` says that the file ends in it without a line end. */
@@ -94,7 +98,7 @@ export class Interpreter {
     if (cells.length !== this.width) {
       if (cells.length > this.width && cells.slice(this.width).some((cell) => cell.trim() !== ''))
         return this.reject(line, null, `The row has more cells than the ${this.width} of the heading.`, text);
-      if (torn && cells.length < this.width)
+      if (torn && cells.length < this.leastWidth)
         return this.reject(line, null, 'The file ends in the middle of this row.', text);
     }
     if (this.isHeading(cells)) return this.reject(line, null, 'The heading stands here again.', text);

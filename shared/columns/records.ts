@@ -84,7 +84,18 @@ export class Records {
 
   /** Cuts a line that has no quoted cells. */
   private split(text: string): string[] {
-    if (!this.runs) return text.split(this.delimiter);
+    if (!this.runs) {
+      // Several times as quick as String.split on lines that are slices of a large text.
+      const cells: string[] = [];
+      const { delimiter } = this;
+      let at = 0;
+      for (let next = text.indexOf(delimiter); next >= 0; next = text.indexOf(delimiter, at)) {
+        cells.push(text.slice(at, next));
+        at = next + delimiter.length;
+      }
+      cells.push(at === 0 ? text : text.slice(at));
+      return cells;
+    }
     const trimmed = text.trim();
     return trimmed === '' ? [''] : trimmed.split(/[ \t]+/);
   }

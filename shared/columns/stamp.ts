@@ -103,6 +103,11 @@ class IsoReader implements StampReader {
       this.ms = local;
       return true;
     }
+    if (at === end - 1 && text.charCodeAt(at) === 90) {
+      this.ms = local;
+      this.zoned = true;
+      return true;
+    }
     const offset = offsetOf(text.slice(at, end).trim());
     if (offset === null) return false;
     this.ms = local - offset;

@@ -20,6 +20,17 @@ export class StepCounter {
     }
   }
 
+  /** Takes `count` readings more, each `step` after the one before. */
+  addRun(step: number, count: number): void {
+    this.last += step * count;
+    if (step === this.step) this.run += count;
+    else {
+      this.flush();
+      this.step = step;
+      this.run = count;
+    }
+  }
+
   private flush(): void {
     if (this.run === 0) return;
     let step = Math.abs(this.step);

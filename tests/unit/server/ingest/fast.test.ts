@@ -1,0 +1,194 @@
+import fc from 'fast-check';
+import { describe, expect, it } from 'vitest';
+import type { ColumnPlan } from '../../../../shared/api/plan.ts';
+import { isPlain } from '../../../../server/ingest/fast.ts';
+import { planOf, read } from './reading.ts';
+
+const pad = (n: number, width = 2): string => String(n).padStart(width, '0');
+
+/** Ways to write a civil time: the plan's time part and the cells. Written here by hand, not by the code under test. */
+const FORMS: { time: Pick<ColumnPlan['time'], 'columns' | 'format'>; cells: (d: Date, i: number) => string[] }[] = [
+  { time: { columns: ['t'], format: 'iso' }, cells: (d) => [d.toISOString().slice(0, 19)] },
+  { time: { columns: ['t'], format: 'iso' }, cells: (d) => [d.toISOString().slice(0, 16).replace('T', ' ')] },
+  { time: { columns: ['t'], format: 'iso' }, cells: (d) => [d.toISOString().slice(0, 19) + 'Z'] },
+  { time: { columns: ['t'], format: 'iso' }, cells: (d) => [d.toISOString().slice(0, 19) + '-03:30'] },
+  { time: { columns: ['t'], format: 'epochSeconds' }, cells: (d) => [String(d.getTime() / 1000)] },
+  { time: { columns: ['t'], format: 'epochMilliseconds' }, cells: (d) => [String(d.getTime())] },
+  {
+    time: { columns: ['t'], format: 'dd/MM/yyyy HH:mm' },
+    cells: (d) => [
+      `${pad(d.getUTCDate())}/${pad(d.getUTCMonth() + 1)}/${d.getUTCFullYear()} ${d.toISOString().slice(11, 16)}`,
+    ],
+  },
+  {
+    time: { columns: ['t', 'u'], format: 'dd.MM.yyyy HH:mm:ss' },
+    cells: (d) => [
+      `${pad(d.getUTCDate())}.${pad(d.getUTCMonth() + 1)}.${d.getUTCFullYear()}`,
+      d.toISOString().slice(11, 19),
+    ],
+  },
+  {
+    time: { columns: ['t'], format: "MM-dd-yyyy'T'HH:mm" },
+    cells: (d) => [
+      `${pad(d.getUTCMonth() + 1)}-${pad(d.getUTCDate())}-${d.getUTCFullYear()}T${d.toISOString().slice(11, 16)}`,
+    ],
+  },
+];
+
+interface Case {
+  text: string;
+  plan: ColumnPlan;
+}
+
+/** Plain tables in many forms, around a clock change or not, with odd cells now and then. */
+const tables: fc.Arbitrary<Case> = fc
+  .record({
+    form: fc.constantFrom(...FORMS),
+    delimiter: fc.constantFrom(',', ';', '\t', '|'),
+    comma: fc.boolean(),
+    start: fc.constantFrom(
+      '2026-03-28T20:00Z',
+      '2026-10-24T20:00Z',
+      '2024-02-28T22:00Z',
+      '1990-12-31T20:00Z',
+      '2026-06-30T23:00Z',
+    ),
+    step: fc.constantFrom(10, 60, 900, 1800, 3600),
+    zone: fc.constantFrom('Europe/London', 'UTC', '+10:00', 'Australia/Lord_Howe'),
+    lineEnd: fc.constantFrom('\n', '\r\n', '\r'),
+    ignored: fc.boolean(),
+    order: fc.constantFrom('up', 'up', 'up', 'down'),
+    cells: fc.array(
+      fc.tuple(
+        fc.oneof(
+          {
+            weight: 8,
+            arbitrary: fc
+              .tuple(fc.integer({ min: -5000, max: 99999 }), fc.nat(3))
+              .map(([n, d]) => (n / 10 ** d).toFixed(d)),
+          },
+          {
+            weight: 1,
+            arbitrary: fc.constantFrom(
+              '',
+              '-',
+              'n/a',
+              '1e3',
+              '.5',
+              '5.',
+              '+7',
+              '"8"',
+              '1234567890123456',
+              '--3',
+              '1.2.3',
+              ' 4 ',
+              'x',
+              '-0',
+              '.',
+              '\0',
+            ),
+          },
+        ),
+        fc.oneof(
+          { weight: 8, arbitrary: fc.nat(9).map(String) },
+          { weight: 1, arbitrary: fc.constantFrom('', '"a\nb"', '"', 'é', 'n/a') },
+        ),
+      ),
+      { minLength: 1, maxLength: 80 },
+    ),
+    end: fc.boolean(),
+  })
+  .map(({ form, delimiter, comma, start, step, zone, lineEnd, ignored, order, cells, end }) => {
+    const decimal = comma && delimiter !== ',' ? ',' : '.';
+    const head = [...form.time.columns, ...(ignored ? ['note'] : []), 'a', 'b'];
+    const rows = cells.map(([a, b], i) => {
+      const at = new Date(Date.parse(start) + i * step * 1000);
+      return [...form.cells(at, i), ...(ignored ? [b] : []), a.replace('.', decimal), b].join(delimiter);
+    });
+    if (order === 'down') rows.reverse();
+    const plan = planOf({
+      delimiter,
+      decimal,
+      time: { ...form.time, zone, stamp: 'start' },
+      columns: [
+        { column: 'a', channel: 'export', kind: 'power', unit: 'W', sign: 1 },
+        { column: 'b', channel: 'import', kind: 'power', unit: 'W', sign: -1 },
+      ],
+    });
+    return { text: [head.join(delimiter), ...rows].join(lineEnd) + (end ? lineEnd : ''), plan };
+  });
+
+/** A table with a few of its characters changed, taken out, doubled or cut off. */
+const mutated: fc.Arbitrary<Case> = fc
+  .tuple(
+    tables,
+    fc.array(
+      fc.tuple(
+        fc.nat(),
+        fc.constantFrom('drop', 'double', 'swap', 'cut'),
+        fc.constantFrom(...',;\t|.:-+0 9"\n\r\0TZé/'),
+      ),
+      { maxLength: 4 },
+    ),
+  )
+  .map(([{ text, plan }, changes]) => {
+    const headEnd = text.search(/[\n\r]/) + 1;
+    let body = text.slice(headEnd);
+    for (const [where, how, char] of changes) {
+      const at = where % (body.length + 1);
+      if (how === 'drop') body = body.slice(0, at) + body.slice(at + 1);
+      else if (how === 'double') body = body.slice(0, at) + body.slice(Math.max(0, at - 5));
+      else if (how === 'swap') body = body.slice(0, at) + char + body.slice(at + 1);
+      else if (where % 3 === 0) body = body.slice(0, at);
+    }
+    return { text: text.slice(0, headEnd) + body, plan };
+  });
+
+async function same({ text, plan }: Case, size: number): Promise<number> {
+  expect(isPlain(plan)).toBe(true);
+  const fast = await read(text, plan, { size });
+  const general = await read(text, plan, { size: 4096, choice: 'general' });
+  expect(fast.layers).toEqual(general.layers);
+  expect(fast.rejected).toEqual(general.rejected);
+  expect({ ...fast.result, fastRows: 0 }).toEqual(general.result);
+  const { read: rows, accepted, rejected, unchanged } = fast.result.rows;
+  expect(accepted + rejected + unchanged).toBe(rows);
+  return fast.result.fastRows;
+}
+
+describe('the fast path', () => {
+  it('gives what the general reader gives, on generated tables', async () => {
+    await fc.assert(
+      fc.asyncProperty(
+        tables,
+        fc.integer({ min: 1, max: 3000 }),
+        async (table, size) => void (await same(table, size)),
+      ),
+      { numRuns: 400 },
+    );
+  });
+
+  it('gives what the general reader gives, on mutated tables', async () => {
+    await fc.assert(
+      fc.asyncProperty(
+        mutated,
+        fc.integer({ min: 1, max: 3000 }),
+        async (table, size) => void (await same(table, size)),
+      ),
+      { numRuns: 800 },
+    );
+  });
+
+  it.each(FORMS)('takes nearly all rows of a plain table in $time.format', async ({ time, cells }) => {
+    const rows = Array.from({ length: 500 }, (_, i) =>
+      [...cells(new Date(Date.UTC(2026, 5, 1) + i * 60_000), i), i, 2].join(';'),
+    );
+    const plan = planOf({
+      delimiter: ';',
+      time: { ...time, zone: 'Europe/London', stamp: 'start' },
+      columns: [{ column: 'a', channel: 'export', kind: 'power', unit: 'W', sign: 1 }],
+    });
+    const text = [[...time.columns, 'a', 'b'].join(';'), ...rows].join('\n') + '\n';
+    expect(await same({ text, plan }, 1000)).toBeGreaterThanOrEqual(499);
+  });
+});
