@@ -48,7 +48,9 @@ export function measure(run: Run): Measured {
   const clock = new ZoneClock(home.timeZone);
   const channels: Measured['channels'] = {};
   const put = (name: MeasuredName, value: (i: number) => number): void => {
-    channels[name] = Float64Array.from({ length: minutes }, (_, i) => value(i));
+    const values = new Float64Array(minutes);
+    for (let i = 0; i < minutes; i++) values[i] = value(i);
+    channels[name] = values;
   };
   const whole = (watts: number): number => Math.round(watts / home.meters.stepW) * home.meters.stepW;
   const byClamp = home.meters.exportBy === 'diverterClamp';

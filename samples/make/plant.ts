@@ -109,17 +109,15 @@ export class Plant {
     this.ohms = home.heaters.map((heater) => heater.ratedVolts ** 2 / heater.ratedW);
   }
 
-  /** The same plant in the same state, to see what it would have done otherwise. */
-  fork(): Plant {
-    const other = new Plant(this.home, 0, this.divert);
-    other.cylinder.temps.set(this.cylinder.temps);
-    this.closed.forEach((closed, i) => (other.closed[i] = closed));
-    other.calling = this.calling;
-    other.relayOn = this.relayOn;
-    other.command = this.command;
-    other.coil = this.coil;
-    other.seenW = this.seenW;
-    return other;
+  /** Takes over the state of the same plant, to see what it would have done otherwise. */
+  become(other: Plant): void {
+    this.cylinder.temps.set(other.cylinder.temps);
+    for (let i = 0; i < this.closed.length; i++) this.closed[i] = other.closed[i];
+    this.calling = other.calling;
+    this.relayOn = other.relayOn;
+    this.command = other.command;
+    this.coil = other.coil;
+    this.seenW = other.seenW;
   }
 
   /** Whether the relay lets the backup heat. */

@@ -243,13 +243,15 @@ export function simulate(
   const sensors = home.cylinder.sensors.map(() => new Float32Array(minutes));
   const heldWh = new Float64Array(minutes);
   const days: TrueDay[] = [];
-  const plant = new Plant(home, 45, options.divert ?? true);
+  const divert = options.divert ?? true;
+  const plant = new Plant(home, 45, divert);
+  const spare = new Plant(home, 45, divert);
   const battery = new Battery(home);
   let at = 0;
   for (let day = firstDay - WARM_UP_DAYS; day < endDay; day++) {
     const today = faultsOn(faults, civilDate(day));
     const ahead = dayAhead(home, clock, day, today);
-    const truth = runDay(home, plant, battery, ahead, conditionsOf(today), (minute, sums) => {
+    const truth = runDay(home, plant, spare, battery, ahead, conditionsOf(today), (minute, sums) => {
       if (day < firstDay) return;
       const i = at + minute;
       columns.forEach((values, c) => (values[i] = sums.flow[c]));
@@ -283,6 +285,8 @@ type DaySums = Omit<TrueDay, 'date' | 'hours' | 'bright' | 'away'>;
 function runDay(
   home: Home,
   plant: Plant,
+  /** The same plant had the backup been held off since midnight; takes over when fuel first heats. */
+  spare: Plant,
   battery: Battery,
   ahead: DayAhead,
   now: Conditions,
@@ -322,7 +326,6 @@ function runDay(
   const held: Conditions = { ...now, noHeat: true };
   const before = plant.cylinder.heldWh();
   const top = plant.cylinder.temps.length - 1;
-  /** The same plant had the backup been held off since midnight; made when fuel first heats. */
   let without: Plant | null = null;
   for (let minute = 0; minute < ahead.volts.length; minute++) {
     f.fill(0);
@@ -346,9 +349,9 @@ function runDay(
       outside.tapLitres = ahead.taps[step];
       outside.useC = ahead.useC[step];
       const mayHeat = outside.allowed || now.relay === 'stuck' || plant.coilW > 0;
-      const kept: Plant | null = without === null && mayHeat ? plant.fork() : null;
+      if (without === null && mayHeat) spare.become(plant);
       plant.step(outside, now);
-      if (without === null && plant.coilW > 0) without = kept;
+      if (without === null && plant.coilW > 0) without = spare;
       without?.step(outside, held);
       f[AT.panels] += panels - plant.curtailedW;
       f[AT.load] += load;
