@@ -136,7 +136,20 @@ export function planIssues(plan: ColumnPlan): { path: string; label: string; mes
     issues.push({ path: 'columns', label: 'Columns', message: 'Say of at least one column what it measures.' });
   if (plan.time.columns.length === 0)
     issues.push({ path: 'time.columns', label: 'Time', message: 'Say which column holds the time.' });
+  const lines: [number | null | undefined, string, string, number][] = [
+    [plan.headerLine, 'headerLine', 'Line of the headings', 1],
+    [plan.skipRows, 'skipRows', 'Rows to pass over', 0],
+  ];
+  for (const [value, path, label, least] of lines)
+    if (value != null && !(value >= least && value <= 10000))
+      issues.push({ path, label, message: `Write a whole number from ${least} to 10000, or nothing.` });
   plan.columns.forEach((column, at) => {
+    if (Number.isNaN(column.factor))
+      issues.push({
+        path: `columns.${at}.factor`,
+        label: `${column.column}, multiply by`,
+        message: 'Write a number greater than 0, such as 0.001.',
+      });
     if (
       column.kind === 'state' &&
       !(column.on?.length && column.off?.length) &&
