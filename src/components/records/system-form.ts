@@ -1,6 +1,7 @@
 import type { DatedSystem, Fuel, System } from '../../../shared/api/property.ts';
 import { TANK_CHANNELS, type TankChannel } from '../../../shared/units/channels.ts';
 import { FieldReader, type Issue } from './issues.ts';
+import { DAYS, type DayOfWeek } from './week.ts';
 import { parseClock, parseDate, parseNumber, parseShare, toText, type NumberRule, type Parsed } from './parse.ts';
 
 export interface SensorForm {
@@ -21,6 +22,7 @@ export interface PanelForm {
   azimuthDegrees: string;
 }
 export interface SpanForm {
+  days: DayOfWeek[];
   start: string;
   end: string;
 }
@@ -70,12 +72,17 @@ export const RULES = {
   kwp: { min: 0.01, max: 200, unit: 'kWp', units: ['kw'] },
   tiltDegrees: { min: 0, max: 90, unit: '°', units: ['degrees', 'deg'] },
   exportLimitKw: { min: 0, max: 1000, unit: 'kW' },
-  calorificGas: { min: 0.01, max: 60, unit: 'MJ/m³', units: ['mj/m3'] },
-  calorificLiquid: { min: 0.01, max: 60, unit: 'kWh/litre', units: ['kwh/l'] },
   occupants: { min: 0, max: 50, units: ['people', 'persons', 'person'] },
   floorAreaM2: { min: 1, max: 5000, unit: 'm²', units: ['m2', 'sqm'] },
   hygieneC: { min: 45, max: 80, unit: '°C', units: ['c', '°'] },
 } satisfies Record<string, NumberRule>;
+
+/** Plausible calorific values, gross. */
+export const CALORIFIC: Record<Exclude<Fuel, 'none'>, NumberRule> = {
+  gas: { min: 20, max: 60, unit: 'MJ/m³', units: ['mj/m3', 'mj'] },
+  lpg: { min: 5, max: 10, unit: 'kWh/litre', units: ['kwh/l', 'kwh'] },
+  oil: { min: 8, max: 13, unit: 'kWh/litre', units: ['kwh/l', 'kwh'] },
+};
 
 const POINTS = ['n', 'nne', 'ne', 'ene', 'e', 'ese', 'se', 'sse', 's', 'ssw', 'sw', 'wsw', 'w', 'wnw', 'nw', 'nnw'];
 
@@ -170,7 +177,11 @@ export function fromSystem(system: DatedSystem): SystemForm {
     gasMeterCovers: system.gasMeterCovers ?? '',
     relayMeans: system.relay?.onMeans ?? '',
     relayTargetC: toText(system.relay?.targetC),
-    relayWindows: (system.relay?.windows ?? []).map((span) => ({ ...span })),
+    relayWindows: (system.relay?.windows ?? []).map(({ days, start, end }) => ({
+      days: [...(days ?? DAYS)],
+      start,
+      end,
+    })),
     exportLoggedBy: system.exportLoggedBy ?? '',
     diversionIs: system.diversionIs ?? '',
     diverterSince: system.diverterSince ?? '',
@@ -249,7 +260,6 @@ export function toSystem(form: SystemForm): { system: DatedSystem; issues: Issue
         ),
       }),
     }));
-  const gas = form.fuel === 'gas';
   const relay = {
     ...given({
       onMeans: form.relayMeans.trim() || undefined,
@@ -257,6 +267,7 @@ export function toSystem(form: SystemForm): { system: DatedSystem; issues: Issue
     }),
     ...(form.relayWindows.length > 0 && {
       windows: form.relayWindows.map((span, index) => ({
+        ...(span.days.length < DAYS.length && { days: backupDays(read, index, span) }),
         start: read.required(
           `relay.windows.${index}.start`,
           'Backup times, from',
@@ -308,11 +319,7 @@ export function toSystem(form: SystemForm): { system: DatedSystem; issues: Issue
                 (text) => parseShare(text, 0.3, 1.1),
               ),
               efficiencyIs: form.efficiency.trim() ? form.efficiencyIs || undefined : undefined,
-              calorificValue: number(
-                'boiler.calorificValue',
-                form.calorificValue,
-                gas ? RULES.calorificGas : RULES.calorificLiquid,
-              ),
+              calorificValue: number('boiler.calorificValue', form.calorificValue, CALORIFIC[form.fuel]),
               ratedKw: number('boiler.ratedKw', form.boilerKw, RULES.boilerKw),
             }),
           },
@@ -347,6 +354,11 @@ export function toSystem(form: SystemForm): { system: DatedSystem; issues: Issue
     }),
   };
   return { system: { from, ...system }, issues: read.issues };
+}
+
+function backupDays(read: FieldReader, index: number, span: SpanForm): DayOfWeek[] {
+  if (span.days.length === 0) read.say(`relay.windows.${index}.days`, 'Backup times, days', 'Choose at least one day.');
+  return DAYS.filter((day) => span.days.includes(day));
 }
 
 /** The entries that are known: an unknown one is left out, never sent as null or 0. */

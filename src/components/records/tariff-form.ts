@@ -1,19 +1,7 @@
-import type { DatedTariff, Tariff } from '../../../shared/api/property.ts';
+import type { DatedTariff } from '../../../shared/api/property.ts';
 import { FieldReader, type Issue } from './issues.ts';
 import { parseClock, parseDate, parsePrice, toText } from './parse.ts';
-
-export type DayOfWeek = NonNullable<Tariff['windows']>[number]['days'][number];
-/** In the order of the week, with the names the screen shows. */
-export const WEEK: Record<DayOfWeek, string> = {
-  mon: 'Mon',
-  tue: 'Tue',
-  wed: 'Wed',
-  thu: 'Thu',
-  fri: 'Fri',
-  sat: 'Sat',
-  sun: 'Sun',
-};
-export const DAYS = Object.keys(WEEK) as DayOfWeek[];
+import { DAYS, type DayOfWeek } from './week.ts';
 
 export interface WindowForm {
   days: DayOfWeek[];

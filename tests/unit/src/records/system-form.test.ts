@@ -1,6 +1,8 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { DatedSystem } from '../../../../shared/api/property.ts';
+import { BOILER_KINDS } from '../../../../shared/energy/boilers.ts';
+import { DAYS } from '../../../../src/components/records/week.ts';
 import { issuesFromServer, messageAt } from '../../../../src/components/records/issues.ts';
 import {
   emptySystemForm,
@@ -51,13 +53,17 @@ const record = fc
     ),
     boiler: fc.oneof(
       fc.constant({ fuel: 'none' }),
-      fc.record({
-        fuel: fc.constantFrom('gas', 'lpg', 'oil'),
-        kind: maybe(fc.constantFrom('condensing-regular', 'back')),
-        efficiency: maybe(step(0.3, 1.1, 0.001)),
-        calorificValue: maybe(step(1, 60, 0.01)),
-        ratedKw: maybe(step(1, 200, 0.1)),
-      }),
+      ...(['gas', 'lpg', 'oil'] as const).map((fuel) =>
+        fc.record({
+          fuel: fc.constant(fuel),
+          kind: maybe(
+            fc.constantFrom(...BOILER_KINDS.filter((kind) => kind.fuels.includes(fuel)).map((kind) => kind.id)),
+          ),
+          efficiency: maybe(step(0.3, 1.1, 0.001)),
+          calorificValue: maybe(step(...({ gas: [20, 60], lpg: [5, 10], oil: [8, 13] } as const)[fuel], 0.01)),
+          ratedKw: maybe(step(1, 200, 0.1)),
+        }),
+      ),
     ),
     panels: maybe(
       fc.array(
@@ -77,10 +83,17 @@ const record = fc
       fc.record({
         targetC: step(20, 95, 1),
         windows: maybe(
-          fc.array(fc.record({ start: clock, end: fc.oneof(clock, fc.constant('24:00')) }), {
-            minLength: 1,
-            maxLength: 12,
-          }),
+          fc.array(
+            fc.record({
+              days: maybe(fc.subarray(['mon', 'tue', 'wed', 'sat', 'sun'] as const, { minLength: 1 })),
+              start: clock,
+              end: fc.oneof(clock, fc.constant('24:00')),
+            }),
+            {
+              minLength: 1,
+              maxLength: 12,
+            },
+          ),
         ),
       }),
     ),
@@ -138,7 +151,7 @@ describe('the form of the system record', () => {
       declaredLoss: '1,8 kWh/24h',
       efficiency: '85,5 %',
       efficiencyIs: 'hotWater' as const,
-      relayWindows: [{ start: '5.30 pm', end: 'midnight' }],
+      relayWindows: [{ days: [...DAYS], start: '5.30 pm', end: 'midnight' }],
       panels: [{ kwp: '4,2 kWp', tiltDegrees: '35°', azimuthDegrees: 'south-west' }],
     };
     const { system, issues } = toSystem(form);

@@ -1,13 +1,8 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { DatedTariff } from '../../../../shared/api/property.ts';
-import {
-  DAYS,
-  emptyTariffForm,
-  emptyWindow,
-  fromTariff,
-  toTariff,
-} from '../../../../src/components/records/tariff-form.ts';
+import { emptyTariffForm, emptyWindow, fromTariff, toTariff } from '../../../../src/components/records/tariff-form.ts';
+import { DAYS } from '../../../../src/components/records/week.ts';
 
 const price = fc.integer({ min: -9999, max: 99999 }).map((n) => n / 1000);
 const tariff = fc.record({
