@@ -1,0 +1,1 @@
+export function startThrowaway(): Promise<{ url: string; stop: () => Promise<void> }>;
