@@ -81,13 +81,28 @@ async function property(owner: Caller, demo: DemoHome): Promise<{ id: string; ma
   return { id: made.id, made: true };
 }
 
+interface GrantShown {
+  id: string;
+  role: string;
+  status: string;
+  email: string | null;
+}
+
+/** Gives and accepts the grants that were never given; one that a person ended stays ended. */
 async function share(
   owner: Caller,
   id: string,
   demo: DemoHome,
   as: (person: DemoPerson) => Promise<Caller>,
 ): Promise<void> {
-  void [owner, id, demo, as];
+  const path = `/api/properties/${id}/grants`;
+  const { grants } = await owner.call<{ grants: GrantShown[] }>('GET', path);
+  for (const { with: person, role } of demo.shared) {
+    const email = address(person);
+    const known = grants.find((grant) => grant.email === email && grant.role === role);
+    const grant = known ?? (await owner.call<GrantShown>('POST', path, { email, role }));
+    if (grant.status === 'given') await (await as(person)).call('POST', `/api/grants/${grant.id}/accept`, {});
+  }
 }
 
 /** A demo file's name: the log, its first and its last date. */

@@ -19,6 +19,7 @@ interface Kept {
 class StandIn {
   readonly properties: { id: string; name: string }[] = [];
   readonly logs: Kept[] = [];
+  readonly grants: { id: string; property: string; email: string; role: string; status: string }[] = [];
   endsAs = 'kept';
   private readonly server: Server = createServer((request, response) => {
     void this.answer(request).then(
@@ -58,6 +59,28 @@ class StandIn {
       this.properties.push(made);
       return { status: 201, body: made };
     }
+    if (route === 'GET /api/properties/:id/grants')
+      return {
+        status: 200,
+        body: { grants: this.grants.filter(({ property }) => property === url.pathname.split('/')[3]) },
+      };
+    if (route === 'POST /api/properties/:id/grants') {
+      const given = {
+        id: `g${this.grants.length}`,
+        property: url.pathname.split('/')[3],
+        status: 'given',
+        ...((await body.json()) as { email: string; role: string }),
+      };
+      this.grants.push(given);
+      return { status: 201, body: given };
+    }
+    if (route.startsWith('POST /api/grants/')) {
+      const grant = this.grants.find(({ id }) => id === url.pathname.split('/')[3]);
+      if (!grant || request.headers.cookie !== `session=${grant.email}`)
+        return { status: 404, body: { detail: 'None.' } };
+      grant.status = 'accepted';
+      return { status: 200, body: {} };
+    }
     if (route === 'GET /api/properties/:id/logs') {
       const logs = this.logs.filter(({ id }) => id.startsWith(`l${url.pathname.split('/')[3].slice(1)}`));
       return { status: 200, body: { logs } };
@@ -88,7 +111,6 @@ class StandIn {
 /** A demo home whose logs begin a few days ago. */
 const short = (demo: DemoHome): DemoHome => ({
   ...demo,
-  shared: [],
   firstDate: (yesterday) => civilDate(dayNumber(yesterday) - 3),
 });
 
@@ -106,6 +128,11 @@ describe('loading the demo', () => {
 
   it('when nothing is there then it makes the properties, says that they are invented, and sends their logs up to yesterday', async () => {
     expect(await load()).toEqual({ properties: 3, logs: 5 });
+    expect(product.grants.map(({ email, role, status }) => `${email} ${role} ${status}`)).toEqual([
+      'installer@example.test installer accepted',
+      'landlord@example.test landlord accepted',
+      'installer@example.test installer accepted',
+    ]);
     for (const { name } of product.properties) expect(name).toMatch(/^Invented .* \(demo\)$/);
     expect(product.logs.map(({ fileName }) => fileName).sort()[0]).toBe(
       'invented-backup-relay_2026-06-06_2026-06-09.csv',
@@ -124,6 +151,10 @@ describe('loading the demo', () => {
     await load();
     expect(await load()).toEqual({ properties: 0, logs: 0 });
     expect(product.logs.length).toBe(5);
+    expect(product.grants.length).toBe(3);
+    product.grants[0].status = 'withdrawn';
+    await load();
+    expect(product.grants.map(({ status }) => status)).toEqual(['withdrawn', 'accepted', 'accepted']);
   });
 
   it('when two days have passed then it adds those two, and they agree with what a whole loading would have sent', async () => {
