@@ -1,3 +1,4 @@
+import path from 'node:path';
 import { z } from 'zod';
 
 const whole = z.coerce.number().int();
@@ -24,6 +25,8 @@ const Settings = z.object({
   LOG_LEVEL: z.enum(['fatal', 'error', 'warn', 'info', 'debug', 'trace', 'silent']).default('info'),
   /** How many proxies in front of us set X-Forwarded-For; 0: none, the header is ignored. */
   TRUST_PROXY: whole.min(0).max(10).default(0),
+  /** Where the built client lies. */
+  CLIENT_FOLDER: z.string().default('dist/client'),
   FAULT_AT: z.string().optional(),
   NODE_ENV: z.string().optional(),
 });
@@ -42,6 +45,8 @@ export interface Config {
   uploadsPerMinute: number;
   logLevel: string;
   trustProxy: number;
+  /** An absolute path. */
+  clientFolder: string;
   /** A named step at which the process kills itself; test builds only. */
   faultAt: string | null;
   /** Answers are held against their schema; on except in production. */
@@ -77,6 +82,7 @@ export function readConfig(env: Record<string, string | undefined> = process.env
     uploadsPerMinute: s.UPLOADS_PER_MINUTE,
     logLevel: s.LOG_LEVEL,
     trustProxy: s.TRUST_PROXY,
+    clientFolder: path.resolve(s.CLIENT_FOLDER),
     faultAt: s.NODE_ENV === 'production' ? null : (s.FAULT_AT ?? null),
     checkAnswers: s.NODE_ENV !== 'production',
   };

@@ -1,7 +1,10 @@
 import { z } from 'zod';
 
 /** A civil date in the property's zone. */
-export const CivilDate = z.iso.date().meta({ description: 'Civil date in the property’s zone, YYYY-MM-DD' });
+export const CivilDate = z.iso
+  .date()
+  .refine((date) => date >= '1900' && date < '2200', 'a date between 1900 and 2199')
+  .meta({ description: 'Civil date in the property’s zone, YYYY-MM-DD' });
 /** An instant, RFC 3339 in UTC. */
 export const Instant = z.iso.datetime({ offset: true }).meta({ description: 'Instant, RFC 3339' });
 export const ClockTime = z

@@ -1,5 +1,7 @@
 import { z } from 'zod';
+import { fixedOffset, isZone } from '../time/zone.ts';
 import { CHANNELS, TANK_CHANNELS } from '../units/channels.ts';
+import { boilerKind } from '../energy/boilers.ts';
 import { CivilDate, ClockTime, ClockTimeEnd } from './common.ts';
 
 const share = z.number().min(0).max(1);
@@ -8,20 +10,64 @@ const positive = z.number().positive();
 export const FUELS = ['gas', 'lpg', 'oil', 'none'] as const;
 export type Fuel = (typeof FUELS)[number];
 
+export const DAYS_OF_WEEK = ['mon', 'tue', 'wed', 'thu', 'fri', 'sat', 'sun'] as const;
+const DaysOfWeek = z.array(z.enum(DAYS_OF_WEEK)).min(1).max(7);
+
+/** Plausible calorific values by fuel: MJ/m³ for gas, kWh/litre for LPG and oil. */
+const CALORIFIC_RANGE: Record<Fuel, readonly [number, number]> = {
+  gas: [20, 60],
+  lpg: [5, 10],
+  oil: [8, 13],
+  none: [0, 60],
+};
+
+const Boiler = z
+  .strictObject({
+    fuel: z.enum(FUELS),
+    kind: z.string().max(60).optional().meta({ description: 'An id from /api/reference/boiler-kinds' }),
+    efficiency: z
+      .number()
+      .min(0.3, 'a share of 0.3 to 1.1, not a percentage')
+      .max(1.1, 'a share of 0.3 to 1.1, not a percentage')
+      .optional()
+      .meta({ description: 'Gross, as a share' }),
+    efficiencyIs: z.enum(['hotWater', 'nameplate']).optional(),
+    calorificValue: positive.max(60).optional().meta({ description: 'MJ/m³ for gas, kWh/litre for LPG and oil' }),
+    ratedKw: positive.max(200).optional(),
+  })
+  .check(({ value, issues }) => {
+    const { fuel, kind, calorificValue } = value;
+    if (kind !== undefined && !boilerKind(kind, fuel))
+      issues.push({
+        code: 'custom',
+        input: kind,
+        path: ['kind'],
+        message: `no kind of boiler for ${fuel} is called “${kind}”; /api/reference/boiler-kinds lists them`,
+      });
+    const [least, most] = CALORIFIC_RANGE[fuel];
+    if (calorificValue !== undefined && (calorificValue < least || calorificValue > most))
+      issues.push({
+        code: 'custom',
+        input: calorificValue,
+        path: ['calorificValue'],
+        message: `for ${fuel} between ${least} and ${most} ${fuel === 'gas' ? 'MJ/m³' : 'kWh/litre'}`,
+      });
+  });
+
 export const System = z
-  .object({
-    cylinder: z.object({
+  .strictObject({
+    cylinder: z.strictObject({
       volumeLitres: z.number().min(20).max(2000),
       declaredLossKwhPerDay: positive.max(50).optional(),
-      insulation: z.object({ kind: z.enum(['foam', 'jacket']), mm: z.number().min(0).max(300) }).optional(),
+      insulation: z.strictObject({ kind: z.enum(['foam', 'jacket']), mm: z.number().min(0).max(300) }).optional(),
       sensors: z
-        .array(z.object({ channel: z.enum(TANK_CHANNELS), height: share.optional() }))
+        .array(z.strictObject({ channel: z.enum(TANK_CHANNELS), height: share.optional() }))
         .max(3)
         .optional(),
     }),
     heaters: z
       .array(
-        z.object({
+        z.strictObject({
           ratedKw: positive.max(30),
           ratedVolts: z.number().min(100).max(480).optional(),
           position: z.enum(['lower', 'upper']),
@@ -31,17 +77,10 @@ export const System = z
       )
       .max(4)
       .optional(),
-    boiler: z.object({
-      fuel: z.enum(FUELS),
-      kind: z.string().max(60).optional().meta({ description: 'An id from /api/reference/boiler-kinds' }),
-      efficiency: z.number().min(0.3).max(1.1).optional().meta({ description: 'Gross, as a share' }),
-      efficiencyIs: z.enum(['hotWater', 'nameplate']).optional(),
-      calorificValue: positive.max(60).optional().meta({ description: 'MJ/m³ for gas, kWh/litre for LPG and oil' }),
-      ratedKw: positive.max(200).optional(),
-    }),
+    boiler: Boiler,
     panels: z
       .array(
-        z.object({
+        z.strictObject({
           kwp: positive.max(200),
           tiltDegrees: z.number().min(0).max(90).optional(),
           azimuthDegrees: z.number().min(0).max(360).optional(),
@@ -55,10 +94,10 @@ export const System = z
     phases: z.union([z.literal(1), z.literal(2), z.literal(3)]).optional(),
     gasMeterCovers: z.enum(['hotWater', 'boiler', 'house']).optional(),
     relay: z
-      .object({
+      .strictObject({
         onMeans: z.string().max(200).optional(),
         windows: z
-          .array(z.object({ start: ClockTime, end: ClockTimeEnd }))
+          .array(z.strictObject({ days: DaysOfWeek.optional(), start: ClockTime, end: ClockTimeEnd }))
           .max(12)
           .optional(),
         targetC: z.number().min(20).max(95).optional(),
@@ -75,11 +114,10 @@ export const System = z
   .meta({ id: 'System' });
 export type System = z.infer<typeof System>;
 
-export const DAYS_OF_WEEK = ['mon', 'tue', 'wed', 'thu', 'fri', 'sat', 'sun'] as const;
 const price = z.number().min(-100).max(100000);
 
 export const Tariff = z
-  .object({
+  .strictObject({
     currency: z.string().regex(/^[A-Z]{3}$/, 'a currency code of three letters, such as GBP'),
     fuelPerKwh: price,
     importPerKwh: price,
@@ -87,8 +125,8 @@ export const Tariff = z
     exportPayment: z.enum(['metered', 'deemed', 'none']).optional(),
     windows: z
       .array(
-        z.object({
-          days: z.array(z.enum(DAYS_OF_WEEK)).min(1).max(7),
+        z.strictObject({
+          days: DaysOfWeek,
           start: ClockTime,
           end: ClockTimeEnd,
           clock: z.enum(['civil', 'standard']),
@@ -107,19 +145,31 @@ export const DatedTariff = Tariff.extend({ from: CivilDate.optional() }).meta({ 
 export type DatedSystem = z.infer<typeof DatedSystem>;
 export type DatedTariff = z.infer<typeof DatedTariff>;
 
-export const Ready = z.object({ time: ClockTime, temperatureC: z.number().min(30).max(75) }).meta({ id: 'Ready' });
+export const Ready = z
+  .strictObject({ time: ClockTime, temperatureC: z.number().min(30).max(75) })
+  .meta({ id: 'Ready' });
 export type Ready = z.infer<typeof Ready>;
+
+const TimeZone = z
+  .string()
+  .max(64)
+  .refine(
+    (name) => isZone(name) && (name === 'UTC' || fixedOffset(name) === null),
+    'a time zone by its IANA name, such as Europe/London',
+  )
+  .meta({ description: 'IANA name' });
+const Country = z
+  .string()
+  .regex(/^[A-Z]{2}$/, 'a country code of two letters, such as GB')
+  .meta({ description: 'ISO 3166, two letters' });
 
 export const PropertyName = z.string().trim().min(1).max(120);
 
 export const NewProperty = z
-  .object({
+  .strictObject({
     name: PropertyName,
-    timeZone: z.string().max(64).meta({ description: 'IANA name' }),
-    country: z
-      .string()
-      .regex(/^[A-Z]{2}$/, 'a country code of two letters, such as GB')
-      .optional(),
+    timeZone: TimeZone,
+    country: Country.optional(),
     latitude: z.number().min(-90).max(90).optional(),
     longitude: z.number().min(-180).max(180).optional(),
     ready: Ready.partial().optional(),
@@ -131,16 +181,16 @@ export const NewProperty = z
 export type NewProperty = z.infer<typeof NewProperty>;
 
 export const PropertyPatch = z
-  .object({
+  .strictObject({
     name: PropertyName,
-    timeZone: z.string().max(64),
-    country: z
-      .string()
-      .regex(/^[A-Z]{2}$/, 'a country code of two letters, such as GB')
-      .nullable(),
+    timeZone: TimeZone,
+    country: Country.nullable(),
     latitude: z.number().min(-90).max(90).nullable(),
     longitude: z.number().min(-180).max(180).nullable(),
-    ready: Ready,
+    ready: z
+      .strictObject({ time: ClockTime.nullable(), temperatureC: Ready.shape.temperatureC.nullable() })
+      .partial()
+      .meta({ description: 'null takes the default again' }),
   })
   .partial()
   .meta({ id: 'PropertyPatch' });
@@ -192,6 +242,9 @@ export const Property = PropertySummary.extend({
   mayEdit: z.boolean(),
   mayUpload: z.boolean(),
   maySeeTraces: z.boolean(),
+  mayGrant: z.boolean(),
+  mayConsent: z.boolean(),
+  tracesConsent: z.boolean().meta({ description: 'Whether the occupier lets landlords see anything finer than a day' }),
 }).meta({ id: 'Property' });
 export type Property = z.infer<typeof Property>;
 
@@ -209,5 +262,6 @@ export const BoilerKinds = z
     ),
   })
   .meta({ id: 'BoilerKinds' });
+export type BoilerKinds = z.infer<typeof BoilerKinds>;
 
 export const ChannelName = z.enum(CHANNELS);
