@@ -34,6 +34,14 @@ export async function personByEmail(
   return row?.get({ plain: true }) ?? null;
 }
 
+export async function updatePasswordHash(tx: Tx, personId: string, passwordHash: string): Promise<void> {
+  await tx.models.Person.update({ passwordHash }, { where: { id: personId }, ...tx.within });
+}
+
+export async function endSessions(tx: Tx, personId: string): Promise<void> {
+  await tx.query(`delete from sessions where sess -> 'passport' ->> 'user' = $1`, [personId]);
+}
+
 /** The owner of a token, whose use is noted at most once a minute. */
 export async function personByToken(scope: Scope, hash: Buffer): Promise<Person | null> {
   const [found] = await scope.query<Person & { tokenId: string; stale: boolean }>(

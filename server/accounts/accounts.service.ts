@@ -5,7 +5,7 @@ import { problem } from '../http/problems.ts';
 import * as repository from './accounts.repository.ts';
 import type { Person, Team } from './accounts.repository.ts';
 import { hashOf, newId, newSecret } from './ids.ts';
-import { passwordFits } from './passwords.ts';
+import { hashPassword, passwordFits } from './passwords.ts';
 
 export type { Person, Team };
 export const { personById, teamsOf } = repository;
@@ -16,6 +16,12 @@ export async function personByPassword(scope: Scope, email: string, password: st
   if (!(await passwordFits(found?.passwordHash ?? null, password)) || !found) return null;
   const { passwordHash: _, ...person } = found;
   return person;
+}
+
+/** Sets a person's password, which ends their sessions. */
+export async function setPassword(tx: Tx, personId: string, password: string): Promise<void> {
+  await repository.updatePasswordHash(tx, personId, await hashPassword(password));
+  await repository.endSessions(tx, personId);
 }
 
 /** The owner of a bearer token, or null. */

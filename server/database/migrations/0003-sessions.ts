@@ -10,6 +10,7 @@ export const sessions: Migration = {
         expire timestamp(6) not null
       );
       create index sessions_expire on sessions (expire);
+      create index sessions_person on sessions ((sess -> 'passport' ->> 'user'));
 
       create table tokens (
         id text primary key,

@@ -43,46 +43,51 @@ export interface TokenRow extends Row<TokenRow> {
   lastUsedAt: CreationOptional<Date | null>;
 }
 
-const id = { type: DataTypes.TEXT, primaryKey: true } as const;
-const text = { type: DataTypes.TEXT, allowNull: false } as const;
+// Sequelize writes into these, so each attribute gets its own.
+const id = () => ({ type: DataTypes.TEXT, primaryKey: true });
+const text = () => ({ type: DataTypes.TEXT, allowNull: false });
 /** Filled in by the database, whose clock decides what holds. */
-const created = { type: DataTypes.DATE } as const;
-const flag = { type: DataTypes.BOOLEAN } as const;
+const created = () => ({ type: DataTypes.DATE });
+const flag = () => ({ type: DataTypes.BOOLEAN });
 
 export function definePeople(sequelize: Sequelize) {
   return {
     Person: sequelize.define<PersonRow>(
       'person',
       {
-        id,
-        email: text,
-        name: text,
+        id: id(),
+        email: text(),
+        name: text(),
         passwordHash: DataTypes.TEXT,
-        administrator: flag,
-        demo: flag,
-        createdAt: created,
+        administrator: flag(),
+        demo: flag(),
+        createdAt: created(),
       },
       { tableName: 'people' },
     ),
-    Team: sequelize.define<TeamRow>('team', { id, kind: text, name: text, createdAt: created }, { tableName: 'teams' }),
+    Team: sequelize.define<TeamRow>(
+      'team',
+      { id: id(), kind: text(), name: text(), createdAt: created() },
+      { tableName: 'teams' },
+    ),
     Membership: sequelize.define<MembershipRow>(
       'membership',
       {
         teamId: { type: DataTypes.TEXT, primaryKey: true },
         personId: { type: DataTypes.TEXT, primaryKey: true },
-        role: text,
-        createdAt: created,
+        role: text(),
+        createdAt: created(),
       },
       { tableName: 'memberships' },
     ),
     Token: sequelize.define<TokenRow>(
       'token',
       {
-        id,
-        personId: text,
-        name: text,
+        id: id(),
+        personId: text(),
+        name: text(),
         hash: { type: DataTypes.BLOB, allowNull: false },
-        createdAt: created,
+        createdAt: created(),
         lastUsedAt: DataTypes.DATE,
       },
       { tableName: 'tokens' },

@@ -55,56 +55,57 @@ export interface GrantRow extends Row<GrantRow> {
   tracesConsentAt: CreationOptional<Date | null>;
 }
 
-const key = { type: DataTypes.TEXT, primaryKey: true } as const;
-const text = { type: DataTypes.TEXT, allowNull: false } as const;
+// Sequelize writes into these, so each attribute gets its own.
+const key = () => ({ type: DataTypes.TEXT, primaryKey: true });
+const text = () => ({ type: DataTypes.TEXT, allowNull: false });
 /** Filled in by the database, whose clock decides what holds. */
-const created = { type: DataTypes.DATE } as const;
+const created = () => ({ type: DataTypes.DATE });
 
-const dated = {
-  propertyId: key,
+const dated = () => ({
+  propertyId: key(),
   fromDate: { type: DataTypes.DATEONLY, primaryKey: true },
   record: { type: DataTypes.JSONB, allowNull: false },
   createdBy: DataTypes.TEXT,
-  createdAt: created,
-};
+  createdAt: created(),
+});
 
 export function defineProperties(sequelize: Sequelize) {
   return {
     Property: sequelize.define<PropertyRow>(
       'property',
       {
-        id: key,
-        name: text,
-        timeZone: text,
+        id: key(),
+        name: text(),
+        timeZone: text(),
         country: DataTypes.TEXT,
         latitude: DataTypes.DOUBLE,
         longitude: DataTypes.DOUBLE,
         readyTime: DataTypes.TEXT,
         readyTemperatureC: DataTypes.DOUBLE,
-        teamId: text,
+        teamId: text(),
         demo: DataTypes.BOOLEAN,
         firstDay: DataTypes.DATEONLY,
         lastDay: DataTypes.DATEONLY,
         createdBy: DataTypes.TEXT,
-        createdAt: created,
+        createdAt: created(),
       },
       { tableName: 'properties' },
     ),
-    SystemRecord: sequelize.define<SystemRow>('systemRecord', { ...dated }, { tableName: 'system_records' }),
-    TariffRecord: sequelize.define<TariffRow>('tariffRecord', { ...dated }, { tableName: 'tariffs' }),
+    SystemRecord: sequelize.define<SystemRow>('systemRecord', dated(), { tableName: 'system_records' }),
+    TariffRecord: sequelize.define<TariffRow>('tariffRecord', dated(), { tableName: 'tariffs' }),
     Grant: sequelize.define<GrantRow>(
       'grant',
       {
-        propertyId: key,
-        id: key,
-        role: text,
+        propertyId: key(),
+        id: key(),
+        role: text(),
         email: DataTypes.TEXT,
         teamId: DataTypes.TEXT,
         givenBy: DataTypes.TEXT,
         givenAs: DataTypes.TEXT,
-        givenAt: created,
+        givenAt: created(),
         acceptedAt: DataTypes.DATE,
-        startsAt: created,
+        startsAt: created(),
         endsAt: DataTypes.DATE,
         withdrawnAt: DataTypes.DATE,
         tracesConsentAt: DataTypes.DATE,
