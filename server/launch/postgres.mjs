@@ -2,6 +2,7 @@ import { spawn } from 'node:child_process';
 import { randomBytes } from 'node:crypto';
 import fs from 'node:fs';
 import path from 'node:path';
+import { tail } from './log-file.mjs';
 import { freePort } from './ports.mjs';
 import { isAlive, run, until } from './processes.mjs';
 import { Refusal } from './say.mjs';
@@ -36,10 +37,9 @@ export function findPostgres(version = null) {
  * as /proc/self/fd/3, whatever lies above.
  *
  * @param {string} folder such as .data/postgres; its neighbours `<folder>.password` and `<folder>.log` go with it
- * @param {{ changed?: () => void }} options
  * @returns {Promise<{ url: (database: string) => string, port: number, pid: number | null, stop: () => Promise<void> }>}
  */
-export async function openPostgres(folder, { changed } = {}) {
+export async function openPostgres(folder) {
   const versionFile = path.join(folder, 'PG_VERSION');
   const isNew = !exists(versionFile, folder);
   const version = isNew ? null : fs.readFileSync(versionFile, 'utf8').trim();
@@ -74,7 +74,7 @@ export async function openPostgres(folder, { changed } = {}) {
       return child;
     },
     // SIGINT is its fast stop: open transactions are rolled back, what was committed is on disk.
-    { signal: 'SIGINT', graceMs: 30_000, changed },
+    { signal: 'SIGINT', graceMs: 30_000, last: true },
   );
   const isReady = () => server.ends > 20 || (server.pid !== null && stateOf(folder, server.pid) === 'ready');
   if (!(await until(isReady, READY_MS)) || server.pid === null) {
@@ -201,8 +201,4 @@ function seedOf(folder) {
   let seed = 0;
   for (const letter of folder) seed = (seed * 31 + letter.charCodeAt(0)) % 10_000;
   return seed;
-}
-
-function tail(file) {
-  return fs.existsSync(file) ? fs.readFileSync(file, 'utf8').split('\n').slice(-15).join('\n') : '';
 }

@@ -1,28 +1,36 @@
 import { spawn } from 'node:child_process';
 import fs from 'node:fs';
+import { guarded } from './guard.mjs';
 
-const running = new Set();
+const running = new Map();
+let ending = false;
 
 /**
- * Runs a command to its end. What it prints goes to our error stream, or with `quiet` into the result.
+ * Runs a command to its end. It ends with us.
  *
  * @param {string} command
  * @param {string[]} args
- * @param {import('node:child_process').SpawnOptions & { quiet?: boolean, input?: string }} options
+ * @param {object} options those of `spawn`, and:
+ * @param {1 | 2} [options.out] the stream of ours on which its output appears
+ * @param {boolean} [options.quiet] its output is in the result instead
+ * @param {string} [options.input] what it reads
+ * @param {boolean} [options.mustFinish] breaking it off would leave a mess: whoever ends us waits for it
  * @returns {Promise<{ code: number, output: string }>} code 127 if it could not be run, 128 if a signal ended it
  */
-export function run(command, args, { quiet = false, input, ...options } = {}) {
+export function run(command, args, { out = 2, quiet = false, input, mustFinish = false, stdio = [], ...options } = {}) {
+  if (ending) return Promise.resolve({ code: 128, output: 'We are ending.' });
   return new Promise((resolve) => {
-    const [, ...rest] = options.stdio ?? [];
-    const [, , ...more] = rest;
-    const out = quiet ? 'pipe' : 2;
+    const stream = quiet ? 'pipe' : out;
+    const first = input === undefined ? 'ignore' : 'pipe';
     const child = spawn(command, args, {
       ...options,
-      stdio: [input === undefined ? 'ignore' : 'pipe', out, out, ...more],
+      detached: true,
+      stdio: [first, stream, stream, ...stdio.slice(3)],
     });
-    running.add(child);
+    guarded(child);
+    running.set(child, mustFinish);
     let output = '';
-    for (const stream of [child.stdout, child.stderr]) stream?.on('data', (piece) => (output += piece));
+    for (const pipe of [child.stdout, child.stderr]) pipe?.on('data', (piece) => (output += piece));
     if (input !== undefined) child.stdin.on('error', () => undefined).end(input);
     child.on('error', (error) => {
       running.delete(child);
@@ -35,28 +43,44 @@ export function run(command, args, { quiet = false, input, ...options } = {}) {
   });
 }
 
-/** Ends what `run` has under way. */
-export function endRunning() {
-  for (const child of running) child.kill('SIGTERM');
+/** Ends what `run` has under way; nothing can be run any more. */
+export async function endRunning() {
+  ending = true;
+  const signal = (name) => {
+    for (const [child, mustFinish] of running) if (!mustFinish) signalGroup(child.pid, name);
+  };
+  signal('SIGTERM');
+  if (!(await until(() => ![...running.values()].includes(false), 15_000))) signal('SIGKILL');
+  await until(() => running.size === 0, 15 * 60_000);
+}
+
+/** Sends a signal to a process and all it has started. */
+export function signalGroup(pid, signal) {
+  try {
+    process.kill(-pid, signal);
+  } catch {
+    // It ended at this very moment.
+  }
 }
 
 /** When a process was started, in ticks since boot: with it a process id is told from a later one of the same number. */
 export function startOf(pid) {
-  try {
-    const stat = fs.readFileSync(`/proc/${pid}/stat`, 'utf8');
-    return stat.slice(stat.lastIndexOf(')') + 2).split(' ')[19];
-  } catch {
-    return null;
-  }
+  return statOf(pid)?.[19] ?? null;
 }
 
 /** Whether a process is there and has not ended; a zombie has. */
 export function isAlive(pid) {
+  const state = statOf(pid)?.[0];
+  return state !== undefined && state !== 'Z';
+}
+
+/** The fields of /proc/<pid>/stat after the name, which may hold spaces. */
+function statOf(pid) {
   try {
     const stat = fs.readFileSync(`/proc/${pid}/stat`, 'utf8');
-    return stat[stat.lastIndexOf(')') + 2] !== 'Z';
+    return stat.slice(stat.lastIndexOf(')') + 2).split(' ');
   } catch {
-    return false;
+    return null;
   }
 }
 

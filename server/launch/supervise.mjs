@@ -1,10 +1,14 @@
+import { guarded, releaseGuard } from './guard.mjs';
+import { endRunning, signalGroup, until } from './processes.mjs';
 import { say } from './say.mjs';
-import { until } from './processes.mjs';
 
 const FIRST_WAIT_MS = 200;
 const LONGEST_WAIT_MS = 10_000;
-/** A process that stood so long is well again: the next wait is the shortest. */
+/** A process that stood so long is well again: the next pause is the shortest. */
 const STEADY_MS = 30_000;
+
+const kept = new Set();
+let ending = false;
 
 /**
  * Keeps a process running: starts it, and again with growing pauses whenever it ends by itself.
@@ -14,10 +18,11 @@ const STEADY_MS = 30_000;
  *   so that Ctrl-C reaches us alone and we decide the order
  * @param {object} options
  * @param {NodeJS.Signals} [options.signal] what asks it to end
- * @param {number} [options.graceMs] how long it may take before its whole group is killed
- * @param {() => void} [options.changed] hears of every new or ended process
+ * @param {number} [options.graceMs] how long that may take before its whole group is killed
+ * @param {boolean} [options.last] others need it: it ends after them
  */
-export function supervise(name, launch, { signal = 'SIGTERM', graceMs = 10_000, changed = () => undefined } = {}) {
+export function supervise(name, launch, { signal = 'SIGTERM', graceMs = 10_000, last = false } = {}) {
+  if (ending) throw new Error(`We are ending: the ${name} is not started.`);
   let child = null;
   let timer;
   let wait = FIRST_WAIT_MS;
@@ -26,14 +31,13 @@ export function supervise(name, launch, { signal = 'SIGTERM', graceMs = 10_000, 
 
   function start() {
     const startedAt = Date.now();
-    const own = launch();
+    const own = guarded(launch(), { last });
     child = own;
     let over = false;
     const ended = (why) => {
       if (over) return;
       over = true;
       child = null;
-      changed();
       if (stopping) return;
       ends += 1;
       if (Date.now() - startedAt > STEADY_MS) wait = FIRST_WAIT_MS;
@@ -43,11 +47,26 @@ export function supervise(name, launch, { signal = 'SIGTERM', graceMs = 10_000, 
     };
     own.on('error', (error) => ended(error.message));
     own.on('exit', (code, by) => ended(by ?? `code ${code}`));
-    changed();
   }
 
-  start();
-  return {
+  async function stop() {
+    stopping = true;
+    clearTimeout(timer);
+    const own = child;
+    if (own) {
+      own.kill(signal);
+      if (!(await until(() => child !== own, graceMs))) {
+        say(`The ${name} did not end within ${graceMs / 1000} s: it was killed.`);
+        signalGroup(own.pid, 'SIGKILL');
+        await until(() => child !== own, 5000);
+      }
+    }
+    kept.delete(handle);
+  }
+
+  const handle = {
+    last,
+    stop,
     get pid() {
       return child?.pid ?? null;
     },
@@ -55,20 +74,17 @@ export function supervise(name, launch, { signal = 'SIGTERM', graceMs = 10_000, 
     get ends() {
       return ends;
     },
-    async stop() {
-      stopping = true;
-      clearTimeout(timer);
-      const own = child;
-      if (!own) return;
-      own.kill(signal);
-      if (await until(() => own !== child, graceMs)) return;
-      say(`The ${name} did not end within ${graceMs / 1000} s: killed.`);
-      try {
-        process.kill(-own.pid, 'SIGKILL');
-      } catch {
-        // It ended at this very moment.
-      }
-      await until(() => own !== child, 5000);
-    },
   };
+  kept.add(handle);
+  start();
+  return handle;
+}
+
+/** Ends everything that was started, those that others need last. Nothing can be started any more. */
+export async function endAll() {
+  ending = true;
+  await endRunning();
+  for (const last of [false, true])
+    await Promise.all([...kept].filter((handle) => handle.last === last).map((handle) => handle.stop()));
+  await releaseGuard();
 }

@@ -1,0 +1,141 @@
+import { spawn } from 'node:child_process';
+import { randomBytes } from 'node:crypto';
+import fs from 'node:fs';
+import path from 'node:path';
+import { build } from './build.mjs';
+import { takeLock } from './lock.mjs';
+import { logFile, tail } from './log-file.mjs';
+import { DATA, DIST, ROOT } from './paths.mjs';
+import { freePort, holderOf, isFree } from './ports.mjs';
+import { openPostgres } from './postgres.mjs';
+import { prepare } from './prepare.mjs';
+import { run, until } from './processes.mjs';
+import { complain, Refusal } from './say.mjs';
+import { onStop } from './stop.mjs';
+import { supervise } from './supervise.mjs';
+
+const HEALTHY_MS = 120_000;
+/** A process that ends so often before the first healthy answer will not get better by itself. */
+const HOPELESS = 3;
+
+const dev = process.argv.includes('--dev');
+const env = process.env;
+
+const ending = onStop();
+try {
+  await start();
+} catch (error) {
+  await ending.fail(() => complain(error));
+}
+
+async function start() {
+  await prepare({ database: !env.DATABASE_URL, browser: false });
+  const lock = takeLock(path.join(DATA, 'launcher.lock'));
+  if ('heldBy' in lock)
+    throw new Refusal(
+      `Coppernoon runs in this checkout already: process ${lock.heldBy}. To stop it: kill ${lock.heldBy}`,
+    );
+  ending.lastly(lock.release);
+
+  const port = await givenPort();
+  const [url] = await Promise.all([databaseUrl(), dev ? null : build()]);
+  const password = env.DEMO === 'off' ? null : env.DEMO_PASSWORD || ownPassword();
+  const settings = {
+    ...env,
+    NODE_ENV: env.NODE_ENV || (dev ? 'development' : 'production'),
+    DATABASE_URL: url,
+    PORT: String(dev ? await freePort(port + 1, 3000, 1000) : port),
+    ...(password ? { DEMO_PASSWORD: password } : {}),
+  };
+  const address = env.BASE_URL || `http://localhost:${port}`;
+  if (dev) Object.assign(settings, { BASE_URL: address, API_ADDRESS: `http://127.0.0.1:${settings.PORT}` });
+  const inside = `http://${env.HOST && env.HOST !== '0.0.0.0' ? env.HOST : '127.0.0.1'}:${settings.PORT}`;
+
+  const kept = dev
+    ? [keep('web', tsx('server/main.ts'), settings), keep('worker', tsx('server/worker.ts'), settings)]
+    : [keep('web', bundle('main'), settings), keep('worker', bundle('worker'), settings)];
+  if (dev)
+    keep('client', ['node_modules/vite/bin/vite.js', '--port', String(port), '--clearScreen', 'false'], settings);
+  await healthy(inside, kept);
+  if (password) await loadDemo(inside, settings);
+  process.stdout.write(
+    `Coppernoon is ready at ${address.replace(/\/$/, '')}\n${password ? `demo password: ${password}\n` : ''}`,
+  );
+}
+
+async function givenPort() {
+  const port = Number(env.PORT || 3000);
+  if (!Number.isInteger(port) || port < 0 || port > 65_535)
+    throw new Refusal(`PORT is ${JSON.stringify(env.PORT)}; it must be a whole number from 0 to 65535.`);
+  if (port === 0) return freePort(randomBytes(2).readUInt16LE(), 30_000, 2000);
+  const free = async () => (await isFree(port, env.HOST || '127.0.0.1')) && (await isFree(port, '::1'));
+  // A launcher that was killed leaves the port within moments.
+  if (!(await free()) && !(await until(free, 3000, 200)))
+    throw new Refusal(
+      `Port ${port} is taken by ${holderOf(port) ?? 'an unknown process'}. End it, or choose another port:\n  PORT=${port + 1} npm start`,
+    );
+  return port;
+}
+
+async function databaseUrl() {
+  if (env.DATABASE_URL) return env.DATABASE_URL;
+  const server = await openPostgres(path.join(DATA, 'postgres'));
+  return server.url('coppernoon');
+}
+
+/** The demo people's password, made once per data folder. */
+function ownPassword() {
+  const file = path.join(DATA, 'demo-password');
+  if (!fs.existsSync(file)) {
+    const letters = 'abcdefghijkmnpqrstuvwxyz23456789';
+    const drawn = [...randomBytes(20)].map((byte) => letters[byte % letters.length]).join('');
+    fs.writeFileSync(file, `${drawn.replace(/(.{5})(?=.)/g, '$1-')}\n`, { mode: 0o600 });
+  }
+  return fs.readFileSync(file, 'utf8').trim();
+}
+
+function bundle(name) {
+  return ['--enable-source-maps', path.join(DIST, 'server', `${name}.js`)];
+}
+
+function tsx(file) {
+  return ['node_modules/tsx/dist/cli.mjs', 'watch', '--clear-screen=false', file];
+}
+
+function keep(name, args, settings) {
+  const log = logFile(path.join(DATA, `${name}.log`));
+  const handle = supervise(`${name} process`, () => {
+    const child = spawn(process.execPath, args, {
+      cwd: ROOT,
+      env: settings,
+      detached: true,
+      stdio: ['ignore', dev ? 2 : 'pipe', dev ? 2 : 'pipe'],
+    });
+    for (const stream of [child.stdout, child.stderr]) stream?.on('data', (piece) => log.write(piece));
+    return child;
+  });
+  return { name, log: log.file, handle };
+}
+
+async function healthy(inside, kept) {
+  const hopeless = () => kept.find(({ handle }) => handle.ends >= HOPELESS);
+  const isHealthy = async () => {
+    try {
+      const answer = await fetch(`${inside}/api/health`, { signal: AbortSignal.timeout(2000) });
+      return answer.ok && (await answer.json()).status === 'ok';
+    } catch {
+      return false;
+    }
+  };
+  const well = await until(async () => hopeless() || (await isHealthy()), HEALTHY_MS, 50);
+  const lost = hopeless() ?? (well ? null : kept[0]);
+  if (lost) throw new Refusal(`The ${lost.name} process does not start. The end of ${lost.log}:\n${tail(lost.log)}`);
+}
+
+async function loadDemo(inside, settings) {
+  const loader = dev
+    ? tsx('samples/make/demo.ts').filter((arg) => !arg.startsWith('--clear') && arg !== 'watch')
+    : bundle('demo');
+  const { code } = await run(process.execPath, [...loader, inside], { cwd: ROOT, env: settings });
+  if (code !== 0) throw new Refusal(`The demo could not be loaded (see above). Without it: DEMO=off npm start`);
+}
