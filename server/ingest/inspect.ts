@@ -1,17 +1,14 @@
 import type { ColumnPlan, Inspection } from '../../shared/api/plan.ts';
+import { type InspectContext, inspectSample, noLog, shapeOfFile } from '../../shared/columns/inspect/inspect.ts';
+import { LogRefused } from '../../shared/columns/refusal.ts';
+import { type FileSummary, sampleOf, Summariser } from './summary.ts';
+import { unpacked } from './unpack.ts';
 
-/** What of the property helps to understand a file. */
-export interface InspectContext {
-  timeZone: string;
-  latitude: number | null;
-  longitude: number | null;
-  country: string | null;
-}
+export type { InspectContext } from '../../shared/columns/inspect/inspect.ts';
+export type { FileSummary } from './summary.ts';
 
-/** What inspection keeps of a file: enough to look again under another plan without its bytes. Plain JSON. */
-export interface FileSummary {
-  fileName: string;
-  bytes: number;
+async function* one(bytes: Uint8Array): AsyncGenerator<Uint8Array> {
+  yield bytes;
 }
 
 /**
@@ -27,18 +24,41 @@ export async function inspectBytes(
   ctx: InspectContext,
   given?: ColumnPlan,
 ): Promise<Inspection & { summary: FileSummary }> {
-  void [source, fileName, ctx, given];
-  throw new Error('Inspection is being built.');
+  const summariser = new Summariser(fileName);
+  let refused: LogRefused | null = null;
+  try {
+    for await (const chunk of unpacked(source instanceof Uint8Array ? one(source) : source)) summariser.push(chunk);
+  } catch (error) {
+    if (!(error instanceof LogRefused)) throw error;
+    refused = error;
+  }
+  const summary = summariser.end();
+  if (refused) {
+    summary.refusal = refused.reason;
+    summary.refusalLine = refused.line;
+  }
+  return { ...inspectSummary(summary, ctx, given), summary };
 }
 
 /** The same from a summary, without the bytes: pure and quick, for corrections. */
 export function inspectSummary(summary: FileSummary, ctx: InspectContext, given?: ColumnPlan): Inspection {
-  void [summary, ctx, given];
-  throw new Error('Inspection is being built.');
+  if (summary.refusal !== null) return noLog(summary.refusal, summary.refusalLine);
+  try {
+    return inspectSample(sampleOf(summary, given?.encoding), ctx, given);
+  } catch (error) {
+    if (error instanceof LogRefused) return noLog(error.reason, error.line);
+    if (error instanceof RangeError && given) return noLog(`There is no encoding named "${given.encoding}".`);
+    throw error;
+  }
 }
 
 /** A key that files of one shape share, for saved column plans: `null` where nothing was understood. */
 export function shapeKey(summary: FileSummary): string | null {
-  void summary;
-  return null;
+  if (summary.refusal !== null) return null;
+  try {
+    return shapeOfFile(sampleOf(summary));
+  } catch (error) {
+    if (error instanceof LogRefused) return null;
+    throw error;
+  }
 }

@@ -164,17 +164,17 @@ type Token =
   | { is: 'text'; text: string }
   | { is: 'blank' }
   | { is: 'year'; digits: number }
-  | { is: 'month' | 'day' | 'hour' | 'hour12' | 'minute' | 'second'; exact: boolean }
+  | { is: 'month' | 'day' | 'hour' | 'hour12' | 'hour11' | 'minute' | 'second'; exact: boolean }
   | { is: 'monthName' | 'weekday' | 'half' | 'fraction' | 'offset' | 'ordinal' };
 
-const NUMERIC: Record<string, 'month' | 'day' | 'hour' | 'hour12' | 'minute' | 'second'> = {
+const NUMERIC: Record<string, 'month' | 'day' | 'hour' | 'hour12' | 'hour11' | 'minute' | 'second'> = {
   M: 'month',
   L: 'month',
   d: 'day',
   H: 'hour',
   k: 'hour',
   h: 'hour12',
-  K: 'hour12',
+  K: 'hour11',
   m: 'minute',
   s: 'second',
 };
@@ -333,7 +333,9 @@ class PatternReader implements StampReader {
             ms += value * 1000;
           } else {
             hour = value;
-            twelve = token.is === 'hour12';
+            if (token.is === 'hour12' && (value < 1 || value > 12)) return false;
+            if (token.is === 'hour11' && value > 11) return false;
+            twelve = token.is !== 'hour';
           }
         }
       }
@@ -341,7 +343,6 @@ class PatternReader implements StampReader {
     while (at < end && text.charCodeAt(at) === 32) at++;
     if (at !== end) return false;
     if (half >= 0) {
-      if (twelve ? hour > 12 : hour > 24) return false;
       if (twelve) hour = (hour % 12) + half * 12;
     }
     const local = civilMs(year, month, day, hour, minute, ms);
