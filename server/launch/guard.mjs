@@ -1,21 +1,5 @@
 import { spawn } from 'node:child_process';
-
-/**
- * A few kilobytes of shell that outlive us: when our end of its pipe closes, because we ended or were killed,
- * it asks the process groups it was last told of to end, kills them after ten seconds, and then stops the
- * database. After an orderly end nothing is left for it to do.
- */
-const SCRIPT = `
-first= last=
-while IFS='|' read -r first_now last_now; do first=$first_now last=$last_now; done
-for pid in $first; do kill -s TERM -- "-$pid"; done
-tries=0
-for pid in $first; do
-  while kill -s 0 -- "-$pid" && [ $tries -lt 100 ]; do sleep 0.1; tries=$((tries + 1)); done
-  kill -s KILL -- "-$pid"
-done
-for pid in $last; do kill -s INT "$pid"; done
-`;
+import path from 'node:path';
 
 const watched = { first: new Set(), last: new Set() };
 let guard = null;
@@ -54,8 +38,9 @@ function tell() {
   guard.stdin.write(`${[...watched.first].join(' ')}|${[...watched.last].join(' ')}\n`);
 }
 
+/** A few kilobytes of shell that outlive us. After an orderly end nothing is left for it to do. */
 function startGuard() {
-  const child = spawn('/bin/sh', ['-c', SCRIPT, 'coppernoon-guard'], {
+  const child = spawn('/bin/sh', [path.join(import.meta.dirname, 'guard.sh')], {
     cwd: '/',
     detached: true,
     stdio: ['pipe', 'ignore', 'ignore'],
