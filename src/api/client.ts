@@ -115,6 +115,23 @@ export const api = {
 };
 
 /**
+ * Fetches a file.
+ * @throws ApiProblem for every answer that is no success, DOMException `AbortError` when aborted
+ */
+export async function fetchBlob(path: string, signal?: AbortSignal): Promise<Blob> {
+  let response: Response;
+  try {
+    response = await fetch(path, { credentials: 'same-origin', signal: signal ?? null });
+    if (response.ok) return await response.blob();
+  } catch (error) {
+    if (isAbort(error)) throw error;
+    throw new ApiProblem(NO_ANSWER);
+  }
+  if (response.status === 401) signedOut();
+  throw problemOf(response.status, await response.text().catch(() => ''));
+}
+
+/**
  * Sends a form with a file and tells how much of it has gone; fetch cannot.
  * @param progress called with the share sent, 0 to 1
  * @returns the parsed answer and its status, so that "the same file" (200) is told from a new one (202)

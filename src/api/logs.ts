@@ -1,6 +1,6 @@
 import type { LogAnswer, LogList } from '../../shared/api/log.ts';
 import type { ColumnPlan, Inspection } from '../../shared/api/plan.ts';
-import { api, upload } from './client.ts';
+import { api, fetchBlob, upload } from './client.ts';
 
 const ofProperty = (id: string): string => `/api/properties/${encodeURIComponent(id)}/logs`;
 const ofLog = (id: string): string => `/api/logs/${encodeURIComponent(id)}`;
@@ -39,3 +39,5 @@ export const putPlan = (id: string, plan: ColumnPlan) => api.put<LogAnswer>(`${o
 export const withdrawLog = (id: string) => api.delete(ofLog(id));
 export const rejectedHref = (id: string): string => `${ofLog(id)}/rejected.csv`;
 export const originalHref = (id: string): string => `${ofLog(id)}/original`;
+/** The file as it was sent. */
+export const fetchOriginal = (id: string, signal?: AbortSignal) => fetchBlob(originalHref(id), signal);

@@ -163,3 +163,41 @@ export function planIssues(plan: ColumnPlan): { path: string; label: string; mes
   });
   return issues;
 }
+
+/** Where nothing was understood: a plan to begin from, that takes the first column for the time and keeps none. */
+export function startPlan(sample: Sample | null, timeZone: string): ColumnPlan {
+  const first = sample?.lines[0]?.line ?? 2;
+  return {
+    encoding: 'utf-8',
+    delimiter: ',',
+    decimal: '.',
+    headerLine: first > 1 ? first - 1 : null,
+    time: { columns: [sample?.header[0] || 1], format: 'iso', zone: timeZone, stamp: 'instant' },
+    columns: [],
+  };
+}
+
+const PART_WORDS: Record<string, string> = {
+  encoding: 'Encoding',
+  delimiter: 'Delimiter',
+  decimal: 'Decimal mark',
+  thousands: 'Grouping of thousands',
+  headerLine: 'Line of the headings',
+  skipRows: 'Rows to pass over',
+  missing: 'Words for a missing value',
+  columns: 'Columns',
+  'time.columns': 'Column of the time',
+  'time.format': 'Format of the time',
+  'time.zone': 'Zone of the time',
+  'time.stamp': 'What the time stands for',
+};
+
+/** The screen's name for a path of a plan, for messages that the server sends. */
+export function planLabel(path: string, plan: ColumnPlan): string {
+  const at = /^columns\.(\d+)(?:\.(\w+))?/.exec(path);
+  if (at) {
+    const column = plan.columns[Number(at[1])]?.column ?? `Column ${Number(at[1]) + 1}`;
+    return at[2] ? `${column}, ${at[2]}` : String(column);
+  }
+  return PART_WORDS[path] ?? PART_WORDS[path.replace(/\.\d+$/, '')] ?? path;
+}

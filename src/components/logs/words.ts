@@ -2,22 +2,22 @@ import type { LogStatus } from '../../../shared/api/log.ts';
 import type { Channel, Kind, Unit } from '../../../shared/units/channels.ts';
 
 /** What each channel is, in words for the person who maps a column to it. */
-export const CHANNEL_WORDS: Record<Channel, { name: string; says: string }> = {
-  grid: { name: 'Grid, both ways', says: 'Signed: import counts positive, export negative' },
-  export: { name: 'Export', says: 'Sent to the grid' },
-  import: { name: 'Import', says: 'Bought from the grid' },
-  generation: { name: 'Generation', says: 'Made by the panels' },
-  diversion: { name: 'Diversion', says: 'Sent into the cylinder’s heater by the diverter' },
-  diversion2: { name: 'Diversion, second heater', says: 'The same for a second heater' },
-  tankTop: { name: 'Tank temperature, top', says: 'Upper sensor of the cylinder' },
-  tankMiddle: { name: 'Tank temperature, middle', says: 'Middle sensor of the cylinder' },
-  tankBottom: { name: 'Tank temperature, bottom', says: 'Lower sensor of the cylinder' },
-  relay: { name: 'Relay', says: 'On: the boiler may heat the cylinder' },
-  gas: { name: 'Gas', says: 'Fuel that was counted' },
-  coldFeed: { name: 'Cold feed temperature', says: 'Water coming in' },
-  ambient: { name: 'Ambient temperature', says: 'Air around the cylinder' },
-  battery: { name: 'Battery', says: 'Signed: charging counts positive' },
-  charger: { name: 'Car charger', says: 'Sent into a car' },
+export const CHANNEL_SAYS: Record<Channel, string> = {
+  grid: 'Signed: import counts positive, export negative',
+  export: 'Sent to the grid',
+  import: 'Bought from the grid',
+  generation: 'Made by the panels',
+  diversion: 'Sent into the cylinder’s heater by the diverter',
+  diversion2: 'The same for a second heater',
+  tankTop: 'Upper sensor of the cylinder',
+  tankMiddle: 'Middle sensor of the cylinder',
+  tankBottom: 'Lower sensor of the cylinder',
+  relay: 'On: the boiler may heat the cylinder',
+  gas: 'Fuel that was counted',
+  coldFeed: 'Water coming in',
+  ambient: 'Air around the cylinder',
+  battery: 'Signed: charging counts positive',
+  charger: 'Sent into a car',
 };
 
 export const KIND_WORDS: Record<Kind, { name: string; says: string }> = {

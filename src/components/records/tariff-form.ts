@@ -130,3 +130,25 @@ export function toTariff(form: TariffForm): { tariff: DatedTariff; issues: Issue
   };
   return { tariff, issues: read.issues };
 }
+
+const EURO = 'AT BE BG CY DE EE ES FI FR GR HR IE IT LT LU LV MT NL PT SI SK'.split(' ');
+const CURRENCIES: Record<string, string> = {
+  GB: 'GBP',
+  AU: 'AUD',
+  NZ: 'NZD',
+  US: 'USD',
+  CA: 'CAD',
+  CH: 'CHF',
+  NO: 'NOK',
+  SE: 'SEK',
+  DK: 'DKK',
+  PL: 'PLN',
+  CZ: 'CZK',
+  ZA: 'ZAR',
+};
+
+/** The currency to begin a tariff with, by country; empty where it is not known. */
+export function currencyOf(country: string | null): string {
+  if (country === null) return '';
+  return EURO.includes(country) ? 'EUR' : (CURRENCIES[country] ?? '');
+}
