@@ -1,6 +1,7 @@
 import { AsyncLocalStorage } from 'node:async_hooks';
 import pg from 'pg';
-import { Sequelize, Transaction } from 'sequelize';
+import { Sequelize } from 'sequelize';
+import type { Transaction } from 'sequelize';
 import { defineModels } from './models/index.ts';
 import type { Models } from './models/index.ts';
 
@@ -27,7 +28,7 @@ export interface Database extends Scope {
   readonly sequelize: Sequelize;
   /** Connections for single statements, the session store and the job queue. */
   readonly pool: pg.Pool;
-  /** Runs `work` in one transaction (read committed): its return commits, a throw rolls all of it back. */
+  /** Runs `work` in one transaction (read committed, PostgreSQL's default): its return commits, a throw rolls all of it back. */
   transaction<T>(work: (tx: Tx) => Promise<T>): Promise<T>;
   close(): Promise<void>;
 }
@@ -82,7 +83,7 @@ export function openDatabase(url: string, onError: (error: Error) => void = () =
     within: { transaction: null },
     transaction: async (work) => {
       if (inside.getStore()) throw new Error('A transaction is running already: hand on its tx.');
-      return sequelize.transaction({ isolationLevel: Transaction.ISOLATION_LEVELS.READ_COMMITTED }, (transaction) => {
+      return sequelize.transaction((transaction) => {
         const { connection: client } = transaction as unknown as { connection: pg.ClientBase };
         const tx: Tx = { models, within: { transaction }, client, query: (sql, values) => run(client, sql, values) };
         return inside.run(true, () => work(tx));

@@ -28,25 +28,21 @@ export async function putTariff(tx: Tx, propertyId: string, fromDate: string, re
   await tx.models.TariffRecord.upsert({ propertyId, fromDate, record, createdBy }, tx.within);
 }
 
-/** Several properties with all their records in three statements, in the order of their names. */
-export async function loadProperties(scope: Scope, ids: readonly string[]): Promise<StoredProperty[]> {
-  if (!ids.length) return [];
-  const { Property, SystemRecord, TariffRecord } = scope.models;
-  const dated = { where: { propertyId: [...ids] }, order: [['fromDate', 'ASC'] as [string, string]], ...scope.within };
-  const [properties, systems, tariffs] = await Promise.all([
-    Property.findAll({ where: { id: [...ids] }, order: ['name', 'id'], ...scope.within }),
-    SystemRecord.findAll(dated),
-    TariffRecord.findAll(dated),
-  ]);
-  return properties.map((property) => ({
-    ...property.get({ plain: true }),
-    systems: ofProperty(systems, property.id),
-    tariffs: ofProperty(tariffs, property.id),
-  }));
-}
+const RECORDS = (table: 'system_records' | 'tariffs') => `
+  coalesce((select jsonb_agg(r.record || jsonb_build_object('from', r.from_date) order by r.from_date)
+    from ${table} r where r.property_id = p.id), '[]')`;
 
-function ofProperty<Content>(rows: { propertyId: string; fromDate: string; record: Content }[], id: string) {
-  return rows.filter((row) => row.propertyId === id).map(({ fromDate, record }) => ({ ...record, from: fromDate }));
+/** Several properties with all their records, in the order of their names. */
+export function loadProperties(scope: Scope, ids: readonly string[]): Promise<StoredProperty[]> {
+  if (!ids.length) return Promise.resolve([]);
+  return scope.query<StoredProperty>(
+    `select p.id, p.name, p.time_zone as "timeZone", p.country, p.latitude, p.longitude, p.ready_time as "readyTime",
+       p.ready_temperature_c as "readyTemperatureC", p.team_id as "teamId", p.demo, p.first_day as "firstDay",
+       p.last_day as "lastDay", p.created_by as "createdBy", p.created_at as "createdAt",
+       ${RECORDS('system_records')} as systems, ${RECORDS('tariffs')} as tariffs
+     from properties p where p.id = any($1) order by p.name, p.id`,
+    [ids],
+  );
 }
 
 /** Locks the property's row until the transaction ends; false if there is none. */
