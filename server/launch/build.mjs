@@ -11,6 +11,14 @@ const PARTS = {
   server: ['server', 'shared', 'samples/make', 'package-lock.json', 'server/launch/build.mjs'],
 };
 
+/** What runs by itself, by name: the two processes, and the two commands that bring the demo. */
+export const ENTRIES = {
+  main: 'server/main.ts',
+  worker: 'server/worker.ts',
+  people: 'server/accounts/people.ts',
+  demo: 'samples/make/demo.ts',
+};
+
 /**
  * Builds what is older than its sources: the client by vite, the server by esbuild. Each part is built beside the
  * old one and takes its place when it is whole.
@@ -69,14 +77,14 @@ const BUILDERS = {
   },
 };
 
-/** The processes and, for each file named `x.thread.ts`, a thread: what runs by itself is a bundle of its own. */
+/** Each entry, and each file named `x.thread.ts`: a thread is a bundle of its own. */
 function serverEntries() {
-  const entries = { main: 'server/main.ts', worker: 'server/worker.ts', demo: 'samples/make/demo.ts' };
+  const entries = { ...ENTRIES };
   for (const file of filesOf('server')) {
     const thread = /([^/]+\.thread)\.ts$/.exec(file)?.[1];
     if (thread) entries[thread] = file;
   }
-  return Object.fromEntries(Object.entries(entries).filter(([, file]) => fs.existsSync(path.join(ROOT, file))));
+  return entries;
 }
 
 function stampFile(part) {

@@ -2,7 +2,7 @@ import { spawn } from 'node:child_process';
 import { randomBytes } from 'node:crypto';
 import fs from 'node:fs';
 import path from 'node:path';
-import { build } from './build.mjs';
+import { build, ENTRIES } from './build.mjs';
 import { takeLock } from './lock.mjs';
 import { logFile, tail } from './log-file.mjs';
 import { DATA, DIST, ROOT } from './paths.mjs';
@@ -17,6 +17,8 @@ import { supervise } from './supervise.mjs';
 const HEALTHY_MS = 120_000;
 /** A process that ends so often before the first healthy answer will not get better by itself. */
 const HOPELESS = 3;
+
+const VITE = ['node_modules/vite/bin/vite.js', '--clearScreen', 'false'];
 
 const dev = process.argv.includes('--dev');
 const env = process.env;
@@ -51,13 +53,10 @@ async function start() {
   if (dev) Object.assign(settings, { BASE_URL: address, API_ADDRESS: `http://127.0.0.1:${settings.PORT}` });
   const inside = `http://${env.HOST && env.HOST !== '0.0.0.0' ? env.HOST : '127.0.0.1'}:${settings.PORT}`;
 
-  const kept = dev
-    ? [keep('web', tsx('server/main.ts'), settings), keep('worker', tsx('server/worker.ts'), settings)]
-    : [keep('web', bundle('main'), settings), keep('worker', bundle('worker'), settings)];
-  if (dev)
-    keep('client', ['node_modules/vite/bin/vite.js', '--port', String(port), '--clearScreen', 'false'], settings);
-  await healthy(inside, kept);
-  if (password) await loadDemo(inside, settings);
+  const kept = [keep('web', entry('main'), settings), keep('worker', entry('worker'), settings)];
+  if (dev) keep('client', [...VITE, '--port', String(port)], settings);
+  await Promise.all([healthy(inside, kept), password ? command('people', [], settings) : null]);
+  if (password) await command('demo', [inside], settings);
   process.stdout.write(
     `Coppernoon is ready at ${address.replace(/\/$/, '')}\n${password ? `demo password: ${password}\n` : ''}`,
   );
@@ -94,12 +93,10 @@ function ownPassword() {
   return fs.readFileSync(file, 'utf8').trim();
 }
 
-function bundle(name) {
-  return ['--enable-source-maps', path.join(DIST, 'server', `${name}.js`)];
-}
-
-function tsx(file) {
-  return ['node_modules/tsx/dist/cli.mjs', 'watch', '--clear-screen=false', file];
+/** How an entry is run: its bundle, or its source and again whenever that changes. */
+function entry(name, { watch = true } = {}) {
+  if (!dev) return ['--enable-source-maps', path.join(DIST, 'server', `${name}.js`)];
+  return ['node_modules/tsx/dist/cli.mjs', ...(watch ? ['watch', '--clear-screen=false'] : []), ENTRIES[name]];
 }
 
 function keep(name, args, settings) {
@@ -132,10 +129,12 @@ async function healthy(inside, kept) {
   if (lost) throw new Refusal(`The ${lost.name} process does not start. The end of ${lost.log}:\n${tail(lost.log)}`);
 }
 
-async function loadDemo(inside, settings) {
-  const loader = dev
-    ? tsx('samples/make/demo.ts').filter((arg) => !arg.startsWith('--clear') && arg !== 'watch')
-    : bundle('demo');
-  const { code } = await run(process.execPath, [...loader, inside], { cwd: ROOT, env: settings });
-  if (code !== 0) throw new Refusal(`The demo could not be loaded (see above). Without it: DEMO=off npm start`);
+/** Runs a command of the product to its end; what it says goes to our error stream. */
+async function command(name, args, settings) {
+  const { code } = await run(process.execPath, [...entry(name, { watch: false }), ...args], {
+    cwd: ROOT,
+    env: settings,
+  });
+  if (code !== 0)
+    throw new Refusal('The demo could not be loaded; the reason stands above. Without it: DEMO=off npm start');
 }
