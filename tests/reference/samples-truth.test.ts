@@ -37,8 +37,8 @@ describe('the sample logs', () => {
   it.each(Object.keys(ASKED))('%s says what truly happened, as DuckDB reads it', async (name) => {
     const { home, from, to, faults } = SAMPLES[name];
     const { days } = simulate(home, from, to, faults);
-    const rows = await duck(ASKED[name].sql);
-    for (const channel of ASKED[name].truth ?? ASKED[name].channels) {
+    const rows = await duck(ASKED[name].sql('held'));
+    for (const channel of ASKED[name].truth ?? ASKED[name].asks) {
       const truth = TRUTH[channel];
       if (!truth) continue;
       expect(rows.length).toBe(days.length);
