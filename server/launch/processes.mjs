@@ -46,20 +46,31 @@ export function run(command, args, { out = 2, quiet = false, input, mustFinish =
 /** Ends what `run` has under way; nothing can be run any more. */
 export async function endRunning() {
   ending = true;
-  const signal = (name) => {
-    for (const [child, mustFinish] of running) if (!mustFinish) signalGroup(child.pid, name);
-  };
-  signal('SIGTERM');
-  if (!(await until(() => ![...running.values()].includes(false), 15_000))) signal('SIGKILL');
+  const groups = [...running].filter(([, mustFinish]) => !mustFinish).map(([child]) => child.pid);
+  await Promise.all(groups.map((pid) => endGroup(pid)));
   await until(() => running.size === 0, 15 * 60_000);
 }
 
-/** Sends a signal to a process and all it has started. */
-export function signalGroup(pid, signal) {
+/**
+ * Ends a process and all it has started: asks its leader, waits, kills who is left.
+ *
+ * @param {number} pid leader of a group
+ * @returns {Promise<boolean>} whether all of them went by themselves
+ */
+export async function endGroup(pid, { signal = 'SIGTERM', graceMs = 10_000, leaderAlone = false } = {}) {
+  send(leaderAlone ? pid : -pid, signal);
+  if (await until(() => !send(-pid, 0), graceMs)) return true;
+  send(-pid, 'SIGKILL');
+  await until(() => !send(-pid, 0), 5000);
+  return false;
+}
+
+/** Whether there was somebody to get the signal. */
+function send(pid, signal) {
   try {
-    process.kill(-pid, signal);
+    return process.kill(pid, signal);
   } catch {
-    // It ended at this very moment.
+    return false;
   }
 }
 

@@ -1,5 +1,5 @@
 import { guarded, releaseGuard } from './guard.mjs';
-import { endRunning, signalGroup, until } from './processes.mjs';
+import { endGroup, endRunning } from './processes.mjs';
 import { say } from './say.mjs';
 
 const FIRST_WAIT_MS = 200;
@@ -52,15 +52,8 @@ export function supervise(name, launch, { signal = 'SIGTERM', graceMs = 10_000, 
   async function stop() {
     stopping = true;
     clearTimeout(timer);
-    const own = child;
-    if (own) {
-      own.kill(signal);
-      if (!(await until(() => child !== own, graceMs))) {
-        say(`The ${name} did not end within ${graceMs / 1000} s: it was killed.`);
-        signalGroup(own.pid, 'SIGKILL');
-        await until(() => child !== own, 5000);
-      }
-    }
+    if (child && !(await endGroup(child.pid, { signal, graceMs, leaderAlone: true })))
+      say(`The ${name} did not end within ${graceMs / 1000} s: it was killed.`);
     kept.delete(handle);
   }
 
