@@ -59,8 +59,8 @@ export async function insertFirstGrant(
   await tx.models.Grant.create({ ...grant, email: null, givenAs: null, acceptedAt: new Date() }, tx.within);
 }
 
-export async function insertGrant(tx: Tx, grant: CreationAttributes<GrantRow>): Promise<GrantFields> {
-  return (await tx.models.Grant.create(grant, tx.within)).get({ plain: true });
+export async function insertGrant(tx: Tx, grant: CreationAttributes<GrantRow>): Promise<void> {
+  await tx.models.Grant.create(grant, tx.within);
 }
 
 export async function updateGrant(
@@ -71,34 +71,34 @@ export async function updateGrant(
   await tx.models.Grant.update(fields, { where: { propertyId, id }, ...tx.within });
 }
 
-/** All grants of a property, locked until the transaction ends, so that two changes cannot pass each other. */
-export async function lockGrants(tx: Tx, propertyId: string): Promise<GrantFields[]> {
-  const rows = await tx.models.Grant.findAll({
-    where: { propertyId },
-    order: ['givenAt', 'id'],
-    lock: true,
-    ...tx.within,
-  });
-  return rows.map((row) => row.get({ plain: true }));
-}
-
-export interface NamedGrant extends GrantFields {
+/** A grant as it stands by the database's clock, the only one that decides what holds. */
+export interface StandingGrant extends GrantFields {
+  holds: boolean;
+  /** Its time has run out. */
+  ended: boolean;
   teamName: string | null;
+  /** Whether its team keeps the property. */
   keeps: boolean;
 }
 
 /** All grants of a property with the names of their teams, oldest first. */
-export async function grantsOf(scope: Scope, propertyId: string): Promise<NamedGrant[]> {
-  const rows = await scope.models.Grant.findAll({ where: { propertyId }, order: ['givenAt', 'id'], ...scope.within });
-  const names = await scope.query<{ id: string; name: string; keeps: boolean }>(
-    `select teams.id, teams.name, teams.id = properties.team_id as keeps from properties
-     join teams on teams.id in (select team_id from grants where property_id = properties.id) where properties.id = $1`,
+export function grantsOf(scope: Scope, propertyId: string): Promise<StandingGrant[]> {
+  return scope.query<StandingGrant>(
+    `select g.property_id as "propertyId", g.id, g.role, g.email, g.team_id as "teamId", g.given_by as "givenBy",
+       g.given_as as "givenAs", g.given_at as "givenAt", g.accepted_at as "acceptedAt", g.starts_at as "startsAt",
+       g.ends_at as "endsAt", g.withdrawn_at as "withdrawnAt", g.traces_consent_at as "tracesConsentAt",
+       ${holds('g')} as holds, coalesce(g.ends_at <= now(), false) as ended,
+       teams.name as "teamName", coalesce(g.team_id = p.team_id, false) as keeps
+     from grants g join properties p on p.id = g.property_id left join teams on teams.id = g.team_id
+     where g.property_id = $1 order by g.given_at, g.id`,
     [propertyId],
   );
-  return rows.map((row) => {
-    const team = names.find(({ id }) => id === row.teamId);
-    return { ...row.get({ plain: true }), teamName: team?.name ?? null, keeps: team?.keeps ?? false };
-  });
+}
+
+/** The same, while nobody else changes them until the transaction ends. */
+export async function lockGrants(tx: Tx, propertyId: string): Promise<StandingGrant[]> {
+  await tx.query('select from properties where id = $1 for update', [propertyId]);
+  return grantsOf(tx, propertyId);
 }
 
 /** What waits for the owner of this address, oldest first. */

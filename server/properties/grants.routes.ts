@@ -22,7 +22,7 @@ export const grantRoutes: Route[] = [
     tag,
     summary: 'Who has which role at a property',
     answers: { 200: { description: 'Oldest first, also those that have ended', schema: GrantList } },
-    handle: async ({ deps, params }) => ({ status: 200, body: await listGrants(deps.db, params.id, deps.now()) }),
+    handle: async ({ deps, params }) => ({ status: 200, body: await listGrants(deps.db, params.id) }),
   }),
   defineRoute({
     method: 'post',

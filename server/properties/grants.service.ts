@@ -8,15 +8,14 @@ import type { TeamKind } from '../database/models/people.ts';
 import { badFields, problem } from '../http/problems.ts';
 import type { PropertyAccess } from './access.service.ts';
 import * as repository from './grants.repository.ts';
-import type { GrantFields, NamedGrant } from './grants.repository.ts';
+import type { StandingGrant } from './grants.repository.ts';
 import { leaveTrail } from './trail.service.ts';
 
 const KIND_OF: Record<Role, TeamKind> = { occupier: 'household', installer: 'firm', landlord: 'landlord' };
 
 /** Every grant of a property, also those that have ended. */
-export async function listGrants(db: Database, propertyId: string, now: Date): Promise<GrantList> {
-  const grants = await repository.grantsOf(db, propertyId);
-  return { grants: grants.map((grant) => shown(grant, now)) };
+export async function listGrants(db: Database, propertyId: string): Promise<GrantList> {
+  return { grants: (await repository.grantsOf(db, propertyId)).map(shown) };
 }
 
 /**
@@ -33,17 +32,14 @@ export async function giveGrant(
 ): Promise<Grant> {
   if (until && new Date(until) <= now) throw badFields([{ path: 'until', message: 'later than now' }]);
   const { propertyId } = access;
+  const address = email.toLowerCase();
   const dates = { ...(from && { startsAt: new Date(from) }), endsAt: until ? new Date(until) : null };
-  await db.transaction(async (tx) => {
+  return db.transaction(async (tx) => {
+    const waiting = (g: StandingGrant) => g.email === address && g.role === role && !g.acceptedAt && !g.withdrawnAt;
     const grants = await repository.lockGrants(tx, propertyId);
-    if (
-      role === 'occupier' &&
-      access.role !== 'occupier' &&
-      grants.some((g) => g.role === 'occupier' && isHeld(g, now))
-    )
+    if (role === 'occupier' && access.role !== 'occupier' && grants.some((g) => g.role === 'occupier' && g.holds))
       throw problem('forbidden', 'The home is occupied: another occupier is added by those who live there.');
-    const address = email.toLowerCase();
-    const pending = grants.find((g) => g.email === address && g.role === role && !g.acceptedAt && !g.withdrawnAt);
+    const pending = grants.find(waiting);
     if (pending) await repository.updateGrant(tx, pending, dates);
     else
       await repository.insertGrant(tx, {
@@ -57,13 +53,10 @@ export async function giveGrant(
         ...dates,
       });
     await leaveTrail(tx, propertyId, person.id, 'grant given', { role });
+    const given = (await repository.grantsOf(tx, propertyId)).find(waiting);
+    if (!given) throw new Error(`The grant just given at ${propertyId} is not there.`);
+    return shown(given);
   });
-  const grants = await repository.grantsOf(db, propertyId);
-  const given = grants.find(
-    (g) => g.email === email.toLowerCase() && g.role === role && !g.acceptedAt && !g.withdrawnAt,
-  );
-  if (!given) throw problem('conflict', 'The grant was taken up or withdrawn meanwhile.');
-  return shown(given, now);
 }
 
 /**
@@ -112,14 +105,14 @@ export async function acceptGrant(
 ): Promise<Offer> {
   return db.transaction(async (tx) => {
     const { grants, grant } = await ofPerson(tx, person, grantId);
-    if (grant.withdrawnAt || (grant.endsAt && grant.endsAt <= now)) throw problem('not-found');
+    if (grant.withdrawnAt || grant.ended) throw problem('not-found');
     const offer = offered({ ...grant, propertyName: await repository.propertyName(tx, grant.propertyId) });
     if (grant.acceptedAt) return offer;
     const team = await roleTeam(tx, person, teamId, KIND_OF[grant.role]);
     if (!team) throw badFields([{ path: 'teamId', message: 'none of your teams has this id' }]);
     if (team.role === 'reader')
       throw problem('forbidden', 'In this team you are a reader, which does not include to accept grants.');
-    const lets = grants.some((g) => g.teamId === team.id && g.role === 'landlord' && isHeld(g, now));
+    const lets = grants.some((g) => g.teamId === team.id && g.role === 'landlord' && g.holds);
     if (lets && grant.role === 'occupier')
       throw problem(
         'conflict',
@@ -158,13 +151,13 @@ export async function setTracesConsent(
 async function end(
   tx: Tx,
   person: Person,
-  grants: GrantFields[],
-  grant: GrantFields,
+  grants: StandingGrant[],
+  grant: StandingGrant,
   act: 'grant withdrawn' | 'grant declined',
   now: Date,
 ): Promise<void> {
   if (grant.withdrawnAt) return;
-  const lasts = (g: GrantFields) => isHeld(g, now) && g.endsAt === null;
+  const lasts = (g: StandingGrant) => g.holds && g.endsAt === null;
   if (lasts(grant) && !grants.some((other) => other.id !== grant.id && lasts(other)))
     throw problem('conflict', 'This is the last grant without an end: give the property to someone else first.');
   await repository.updateGrant(tx, grant, { withdrawnAt: now });
@@ -176,7 +169,7 @@ async function ofPerson(
   tx: Tx,
   person: Person,
   grantId: string,
-): Promise<{ grants: GrantFields[]; grant: GrantFields }> {
+): Promise<{ grants: StandingGrant[]; grant: StandingGrant }> {
   const [propertyId = ''] = grantId.split('-', 1);
   const grants = /^[a-z0-9]{16}-[a-z0-9]{1,16}$/.test(grantId) ? await repository.lockGrants(tx, propertyId) : [];
   const grant = grants.find(({ id }) => fullId(propertyId, id) === grantId);
@@ -186,9 +179,6 @@ async function ofPerson(
   if (!grant || !mine) throw problem('not-found');
   return { grants, grant };
 }
-
-const isHeld = (g: GrantFields, now: Date) =>
-  g.acceptedAt !== null && g.withdrawnAt === null && g.startsAt <= now && (g.endsAt === null || g.endsAt > now);
 
 const fullId = (propertyId: string, id: string) => `${propertyId}-${id}`;
 
@@ -209,11 +199,11 @@ function offered(grant: {
   };
 }
 
-function shown(grant: NamedGrant, now: Date): Grant {
+function shown(grant: StandingGrant): Grant {
   return {
     id: fullId(grant.propertyId, grant.id),
     role: grant.role,
-    status: statusOf(grant, now),
+    status: statusOf(grant),
     email: grant.email,
     team: grant.teamName,
     keeps: grant.keeps,
@@ -225,8 +215,8 @@ function shown(grant: NamedGrant, now: Date): Grant {
   };
 }
 
-function statusOf(grant: GrantFields, now: Date): Grant['status'] {
+function statusOf(grant: StandingGrant): Grant['status'] {
   if (grant.withdrawnAt) return 'withdrawn';
-  if (grant.endsAt && grant.endsAt <= now) return 'ended';
+  if (grant.ended) return 'ended';
   return grant.acceptedAt ? 'accepted' : 'given';
 }
