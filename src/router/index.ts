@@ -45,7 +45,7 @@ export const routes: RouteRecordRaw[] = [
   {
     path: '/properties/:id',
     component: () => import('../views/PropertyShell.vue'),
-    props: true,
+    props: (to) => ({ id: to.params.id }),
     children: [
       { path: '', name: 'week', component: () => import('../views/Week.vue'), meta: { title: 'Week' } },
       { path: 'days', name: 'days', component: () => import('../views/CalendarDays.vue'), meta: { title: 'Days' } },
