@@ -18,7 +18,7 @@ const Settings = z.object({
     .transform((url) => new URL(url).origin)
     .optional(),
   DEMO: z.enum(['on', 'off']).default('on'),
-  DEMO_PASSWORD: z.string().min(8, 'a password of 8 characters or more').optional(),
+  DEMO_PASSWORD: z.string().optional(),
   UPLOAD_MAX_BYTES: size.default(512 * 2 ** 20),
   QUOTA_BYTES: size.default(5 * 2 ** 30),
   UPLOADS_PER_MINUTE: size.default(120),

@@ -1,6 +1,6 @@
 import { EventEmitter } from 'node:events';
 import { Logger, run } from 'graphile-worker';
-import type { Task, WorkerEvents } from 'graphile-worker';
+import type { Task, Worker, WorkerEvents } from 'graphile-worker';
 import type { Logger as Pino } from 'pino';
 import type { Database } from '../database/connection.ts';
 import type { Handlers, JobName, JobPayloads } from './names.ts';
@@ -33,31 +33,45 @@ export async function runJobs(
   for (const name of names)
     if (typeof handlers[name] !== 'function') throw new TypeError(`The job ${name} has no handler.`);
 
-  const ids = new Set<string>();
+  const pools = new Set<string>();
+  const workers = new Set<Worker>();
   const events: WorkerEvents = new EventEmitter();
-  events.on('worker:create', ({ worker }) => ids.add(worker.workerId));
-  await freeOrphans(db, ids);
+  events.on('pool:create', ({ workerPool }) => pools.add(workerPool.id));
+  events.on('worker:create', ({ worker }) => workers.add(worker));
+  events.on('worker:release', ({ worker }) => workers.delete(worker));
+  events.on('job:complete', () => lookAgain(workers));
+  await freeOrphans(db, pools);
   const runner = await run({
     pgPool: db.pool,
     concurrency,
     noHandleSignals: true,
     gracefulShutdownAbortTimeout: 6000,
+    // Results are written with retries, and all of them before the runner has stopped.
+    preset: { worker: { completeJobBatchDelay: 0, failJobBatchDelay: 0 } },
     logger: new Logger(() => (level, message) => logger[level === 'warning' ? 'warn' : level](message)),
     events,
     taskList: Object.fromEntries(names.map((name) => [name, task(name, handlers[name], logger)])),
     crontab: SWEEP,
   });
+  await freeOrphans(db, pools);
   const beat = setInterval(() => {
-    freeOrphans(db, ids).catch((error: unknown) => logger.warn({ err: error }, 'the worker could not report itself'));
+    freeOrphans(db, pools).catch((error: unknown) => logger.warn({ err: error }, 'the worker could not report itself'));
   }, BEAT_MS);
   const ended = runner.promise.finally(() => clearInterval(beat));
-  return {
-    ended,
-    stop: async () => {
-      await runner.stop();
-      await ended;
-    },
-  };
+  let stopped: Promise<void> | undefined;
+  return { ended, stop: () => (stopped ??= runner.stop().then(() => ended)) };
+}
+
+/**
+ * The queue writes a job's result while it already looks for the next one, and then does not see the rest of
+ * a queue that still counts as busy until it polls. So idle workers look again once the result is in.
+ */
+function lookAgain(workers: ReadonlySet<Worker>): void {
+  for (const ms of [15, 150]) {
+    setTimeout(() => {
+      for (const worker of workers) worker.nudge();
+    }, ms).unref();
+  }
 }
 
 function task<Name extends JobName>(name: Name, handler: Handlers[Name], logger: Pino): Task {
@@ -70,7 +84,7 @@ function task<Name extends JobName>(name: Name, handler: Handlers[Name], logger:
   };
 }
 
-/** Reports these workers as alive and frees the jobs of those that have fallen silent. */
+/** Reports these pools of workers as alive and frees the jobs of those that have fallen silent. */
 async function freeOrphans(db: Database, alive: ReadonlySet<string>): Promise<void> {
   await db.query(
     `insert into workers (id, seen_at) select unnest($1::text[]), now()
