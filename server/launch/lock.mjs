@@ -4,14 +4,15 @@ import { startOf, until } from './processes.mjs';
 /**
  * Takes a lock that a process of this machine holds while it lives. One left by a process that was killed is void.
  *
- * @returns {{ release: () => void } | { heldBy: number }} the lock, or the id of the process that has it
+ * @returns {{ release: () => void, wasLeft: boolean } | { heldBy: number }} the lock, and whether somebody who was
+ *   killed had it last; or the id of the process that has it
  */
 export function takeLock(file) {
   const mine = `${process.pid} ${startOf(process.pid)}`;
-  for (;;) {
+  for (let wasLeft = false; ; wasLeft = true) {
     try {
       fs.writeFileSync(file, mine, { flag: 'wx' });
-      return { release: () => fs.rmSync(file, { force: true }) };
+      return { release: () => fs.rmSync(file, { force: true }), wasLeft };
     } catch (error) {
       if (error.code !== 'EEXIST') throw error;
     }

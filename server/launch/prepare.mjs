@@ -83,13 +83,15 @@ function keepMainClusterAway() {
 }
 
 async function installNpm(missing) {
-  const command = ['ci', '--include=dev', '--no-audit', '--no-fund', '--prefer-offline'];
+  // Without a network npm's own patience would take minutes.
+  const patience = ['--fetch-retries=2', '--fetch-retry-mintimeout=500', '--fetch-retry-maxtimeout=2000'];
+  const command = ['ci', '--include=dev', '--no-audit', '--no-fund', '--prefer-offline', ...patience];
   say(`Installing the npm packages of package-lock.json (${told(missing)}) …`);
   const { code, output } = await run('npm', command, { cwd: ROOT, quiet: true });
   if (code === 0) return;
   throw new Refusal(
     `${output.trim().split('\n').slice(-12).join('\n')}\n\nThe npm packages could not be installed; ` +
-      `missing or of another version: ${told(missing)}. With a network, run:\n  cd ${ROOT} && npm ci --include=dev`,
+      `missing or of another version: ${told(missingPackages())}. With a network, run:\n  cd ${ROOT} && npm ci --include=dev`,
   );
 }
 

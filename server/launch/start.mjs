@@ -39,7 +39,7 @@ async function start() {
     );
   ending.lastly(lock.release);
 
-  const port = await givenPort();
+  const port = await givenPort(lock.wasLeft);
   const [url] = await Promise.all([databaseUrl(), dev ? null : build()]);
   const password = env.DEMO === 'off' ? null : env.DEMO_PASSWORD || ownPassword();
   const settings = {
@@ -62,14 +62,14 @@ async function start() {
   );
 }
 
-async function givenPort() {
+/** @param {boolean} wasKilled our predecessor was, and what it started takes a moment to end */
+async function givenPort(wasKilled) {
   const port = Number(env.PORT || 3000);
   if (!Number.isInteger(port) || port < 0 || port > 65_535)
     throw new Refusal(`PORT is ${JSON.stringify(env.PORT)}; it must be a whole number from 0 to 65535.`);
   if (port === 0) return freePort(randomBytes(2).readUInt16LE(), 30_000, 2000);
   const free = async () => (await isFree(port, env.HOST || '127.0.0.1')) && (await isFree(port, '::1'));
-  // A launcher that was killed leaves the port within moments.
-  if (!(await free()) && !(await until(free, 3000, 200)))
+  if (!(await until(free, wasKilled ? 12_000 : 0, 200)))
     throw new Refusal(
       `Port ${port} is taken by ${holderOf(port) ?? 'an unknown process'}. End it, or choose another port:\n  PORT=${port + 1} npm start`,
     );

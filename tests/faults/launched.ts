@@ -19,9 +19,9 @@ export interface Launched {
   kill(signal: NodeJS.Signals): void;
 }
 
-/** A new, empty data folder below the checkout. */
+/** A new, empty data folder below the checkout, by a name that a later run takes away should this one be killed. */
 export function dataFolder(): string {
-  const folder = path.join(ROOT, '.data/test', `launch-${randomBytes(4).toString('hex')}`);
+  const folder = path.join(ROOT, '.data/test', `run-${process.pid}-${randomBytes(4).toString('hex')}`);
   fs.mkdirSync(folder, { recursive: true });
   return folder;
 }

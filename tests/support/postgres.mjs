@@ -13,7 +13,7 @@ const PLACE = path.join(DATA, 'test');
  */
 export async function startThrowaway() {
   await sweep();
-  const folder = path.join(PLACE, `run-${process.pid}`);
+  const folder = path.join(PLACE, `run-${process.pid}-database`);
   const server = await openPostgres(path.join(folder, 'postgres'));
   return {
     url: server.url('coppernoon'),
@@ -27,7 +27,7 @@ export async function startThrowaway() {
 /** Takes away what runs that were killed have left. */
 async function sweep() {
   for (const name of fs.existsSync(PLACE) ? fs.readdirSync(PLACE) : []) {
-    const pid = Number(/^run-(\d+)$/.exec(name)?.[1]);
+    const pid = Number(/^run-(\d+)/.exec(name)?.[1]);
     if (!pid || isAlive(pid)) continue;
     await endLeftover(path.join(PLACE, name, 'postgres'));
     fs.rmSync(path.join(PLACE, name), { recursive: true, force: true });

@@ -2,12 +2,12 @@ import { spawn } from 'node:child_process';
 import fs from 'node:fs';
 import path from 'node:path';
 import { build } from '../../server/launch/build.mjs';
+import { guarded } from '../../server/launch/guard.mjs';
 import { DATA, ROOT } from '../../server/launch/paths.mjs';
 import { prepare } from '../../server/launch/prepare.mjs';
-import { run, until } from '../../server/launch/processes.mjs';
+import { endGroup, run, until } from '../../server/launch/processes.mjs';
 import { complain, Refusal } from '../../server/launch/say.mjs';
 import { onStop } from '../../server/launch/stop.mjs';
-import { supervise } from '../../server/launch/supervise.mjs';
 import { startThrowaway } from './postgres.mjs';
 
 /** The suites in the order of a full run; the first to fail tell most for the least time. */
@@ -158,31 +158,26 @@ function skippedIn(suites, above = '') {
 }
 
 async function startProduct() {
-  let output = '';
   const env = { ...process.env, DATA_FOLDER: path.join(scratch(), 'product'), PORT: '0', DEMO: 'on' };
   for (const name of ['DATABASE_URL', 'BASE_URL', 'SMTP_URL', 'DEMO_PASSWORD', 'npm_lifecycle_event']) delete env[name];
-  const handle = supervise(
-    'product under test',
-    () => {
-      const child = spawn(process.execPath, ['server/launch/start.mjs'], {
-        cwd: ROOT,
-        env,
-        detached: true,
-        stdio: ['ignore', 'pipe', 2],
-      });
-      child.stdout.on('data', (piece) => (output += piece));
-      return child;
-    },
-    { graceMs: 60_000 },
+  const child = guarded(
+    spawn(process.execPath, ['server/launch/start.mjs'], {
+      cwd: ROOT,
+      env,
+      detached: true,
+      stdio: ['ignore', 'pipe', 2],
+    }),
   );
+  const stop = () => endGroup(child.pid, { graceMs: 60_000 });
+  ending.lastly(stop);
+  let output = '';
+  child.stdout.on('data', (piece) => (output += piece));
   const said = /Coppernoon is ready at (\S+)\ndemo password: (\S+)\n/;
-  const ready = await until(() => handle.ends > 0 || said.test(output), 5 * 60_000, 100);
+  await until(() => child.exitCode !== null || said.test(output), 5 * 60_000, 100);
   const found = said.exec(output);
-  if (!ready || !found) {
-    await handle.stop();
-    return null;
-  }
-  return { url: found[1], password: found[2], stop: () => handle.stop() };
+  if (found) return { url: found[1], password: found[2], stop };
+  await stop();
+  return null;
 }
 
 function node(args, env = {}) {
