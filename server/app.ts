@@ -2,6 +2,7 @@ import express from 'express';
 import type { Express } from 'express';
 import helmet from 'helmet';
 import { accountRoutes } from './accounts/accounts.routes.ts';
+import { dayRoutes } from './days/days.routes.ts';
 import type { Deps } from './deps.ts';
 import { clientFiles } from './http/client.ts';
 import { notFound, problemHandler } from './http/errors.ts';
@@ -9,6 +10,7 @@ import { requestLog } from './http/logs.ts';
 import { routerOf } from './http/router.ts';
 import { callers, isSecure, makePassport, signingSecret } from './http/session.ts';
 import { systemRoutes } from './http/system.routes.ts';
+import { logRoutes } from './logs/logs.routes.ts';
 import { grantRoutes } from './properties/grants.routes.ts';
 import { propertyRoutes } from './properties/properties.routes.ts';
 
@@ -19,7 +21,7 @@ import { propertyRoutes } from './properties/properties.routes.ts';
 export async function createApp(deps: Deps): Promise<Express> {
   const { config, db, logger } = deps;
   const passport = makePassport(deps);
-  const features = [...accountRoutes(passport), ...propertyRoutes, ...grantRoutes];
+  const features = [...accountRoutes(passport), ...propertyRoutes, ...grantRoutes, ...logRoutes, ...dayRoutes];
   const routes = [...features, ...systemRoutes(features)];
 
   const app = express();

@@ -123,7 +123,6 @@ function sizeOf(value: Exclude<CopyValue, string>): number {
  */
 export async function* copyRows(client: pg.ClientBase, sql: string): AsyncGenerator<(Buffer | null)[]> {
   const stream = client.query(copyTo(`copy (${sql}) to stdout (format binary)`));
-  let held: Buffer = Buffer.alloc(0);
   let pieces: Buffer[] = [];
   let size = 0;
   let wanted = SIGNATURE.length + 2;
@@ -133,7 +132,7 @@ export async function* copyRows(client: pg.ClientBase, sql: string): AsyncGenera
       pieces.push(piece);
       size += piece.length;
       if (size < wanted) continue;
-      held = pieces.length === 1 ? piece : Buffer.concat(pieces, size);
+      const held: Buffer = pieces.length === 1 ? piece : Buffer.concat(pieces, size);
       let at = started ? 0 : SIGNATURE.length;
       started = true;
       for (;;) {
@@ -145,9 +144,8 @@ export async function* copyRows(client: pg.ClientBase, sql: string): AsyncGenera
         at = row.end;
         yield row.fields;
       }
-      held = held.subarray(at);
-      pieces = [held];
-      size = held.length;
+      pieces = [held.subarray(at)];
+      size = held.length - at;
     }
   } finally {
     if (!stream.readableEnded && !stream.destroyed) {

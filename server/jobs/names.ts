@@ -2,6 +2,10 @@
 export interface JobPayloads {
   /** Clears away what has run out: sessions, counters, devices not seen for a year. */
   sweep: Record<string, never>;
+  /** Reads a log that waits to be read. */
+  readLog: { propertyId: string; n: number };
+  /** Lets a property's figures follow what was withdrawn or recorded. */
+  refreshFigures: { propertyId: string };
 }
 export type JobName = keyof JobPayloads;
 

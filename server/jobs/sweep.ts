@@ -1,4 +1,5 @@
 import type { Database } from '../database/connection.ts';
+import { LEFTOVERS } from '../logs/originals.service.ts';
 import type { Outcome } from './names.ts';
 
 const RUN_OUT = [
@@ -6,6 +7,7 @@ const RUN_OUT = [
   'delete from counters where ends_at < now()',
   `delete from known_devices where used_at < now() - interval '1 year'`,
   `delete from workers where seen_at < now() - interval '1 day'`,
+  ...LEFTOVERS,
 ];
 
 /** Clears away what has run out. */

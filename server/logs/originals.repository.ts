@@ -34,6 +34,13 @@ export async function putChunk(db: Database, propertyId: string, hash: Buffer, d
   );
 }
 
+export async function dropArriving(db: Database, propertyId: string, hashes: readonly Buffer[]): Promise<void> {
+  await db.query('delete from original_chunks where property_id = $1 and hash = any($2) and arriving', [
+    propertyId,
+    hashes,
+  ]);
+}
+
 /** Makes arrived chunks an original's; false if one of them has gone. */
 export async function settleChunks(tx: Tx, propertyId: string, chunks: readonly Buffer[]): Promise<boolean> {
   await tx.query('update original_chunks set arriving = false where property_id = $1 and hash = any($2) and arriving', [

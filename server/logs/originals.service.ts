@@ -50,6 +50,12 @@ export class OriginalWriter {
     return { hash: sha256(Buffer.concat(this.hashes)), bytes: this.bytes, chunks: this.hashes };
   }
 
+  /** Takes back what was written, as far as no original has it. */
+  async discard(): Promise<void> {
+    await this.writing.catch(() => undefined);
+    await repository.dropArriving(this.db, this.propertyId, this.hashes);
+  }
+
   private async flush(): Promise<void> {
     const data = this.chunk.subarray(0, this.used);
     this.chunk = Buffer.allocUnsafe(CHUNK);
@@ -73,6 +79,9 @@ const quotaReached = () =>
     'too-large',
     'The storage for original files of the team that keeps this property is used up. Nothing of this file was kept.',
   );
+
+/** What uploads that were broken off have left behind; the sweep runs these. */
+export { LEFTOVERS } from './originals.repository.ts';
 
 /** How many bytes of originals may still come to a property. */
 export async function storageRoom(db: Database, propertyId: string, quotaBytes: number): Promise<number> {

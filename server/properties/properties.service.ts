@@ -17,6 +17,7 @@ import { newId } from '../accounts/ids.ts';
 import type { Database, Scope, Tx } from '../database/connection.ts';
 import type { TeamKind } from '../database/models/people.ts';
 import { badFields, problem } from '../http/problems.ts';
+import { askToRefresh } from '../jobs/work.ts';
 import { accessBy, propertyAccess } from './access.service.ts';
 import type { PropertyAccess } from './access.service.ts';
 import { heldGrantsByProperty, insertFirstGrant } from './grants.repository.ts';
@@ -131,6 +132,8 @@ export async function changeProperty(
     await leaveTrail(tx, propertyId, person.id, 'property changed', {
       fields: Object.keys({ ...fields, ...(ready && { ready }) }),
     });
+    const { name: _name, ...weighty } = { ...fields, ...ready };
+    if (Object.keys(weighty).length) await askToRefresh(tx, propertyId, 'derive');
     return readAfter(tx, person, propertyId, now);
   });
 }
@@ -146,6 +149,7 @@ export async function recordSystem(
   return db.transaction(async (tx) => {
     await repository.putSystem(tx, propertyId, from, record, person.id);
     await leaveTrail(tx, propertyId, person.id, 'system recorded', { from });
+    await askToRefresh(tx, propertyId, 'derive');
     return readAfter(tx, person, propertyId, now);
   });
 }
@@ -161,6 +165,7 @@ export async function recordTariff(
   return db.transaction(async (tx) => {
     await repository.putTariff(tx, propertyId, from, record, person.id);
     await leaveTrail(tx, propertyId, person.id, 'tariff recorded', { from });
+    await askToRefresh(tx, propertyId, 'derive');
     return readAfter(tx, person, propertyId, now);
   });
 }

@@ -1,6 +1,6 @@
 import { EventEmitter } from 'node:events';
 import pg from 'pg';
-import type { Database, Tx } from '../database/connection.ts';
+import type { Database, Tx } from './connection.ts';
 
 const CHANNEL = 'coppernoon';
 const RETRY_MS = 500;

@@ -1,0 +1,23 @@
+import { DaysAnswer, DaysQuery } from '../../shared/api/day.ts';
+import { defineRoute } from '../http/route.ts';
+import type { Route } from '../http/route.ts';
+import { readDays } from './days.service.ts';
+
+export const dayRoutes: Route[] = [
+  defineRoute({
+    method: 'get',
+    path: '/api/properties/:id/days',
+    policy: { property: 'days' },
+    tag: 'Figures',
+    summary: 'The daily figures',
+    description:
+      'One day for each date from `from` to `to`, both included, 4,000 at most, and their total. A figure that is not ' +
+      'known is null, and `reasons` says why.',
+    query: DaysQuery,
+    answers: { 200: { description: 'In order of date', schema: DaysAnswer } },
+    handle: async ({ deps: { db }, params, query }) => ({
+      status: 200,
+      body: await readDays(db, params.id, query.from, query.to),
+    }),
+  }),
+];
