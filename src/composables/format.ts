@@ -109,6 +109,8 @@ const DATE_STYLES = {
   day: { day: 'numeric' },
   /** Mon 23 */
   weekdayDay: { weekday: 'short', day: 'numeric' },
+  /** Mon 23 Nov */
+  weekdayShort: { weekday: 'short', day: 'numeric', month: 'short' },
   /** 23 Nov */
   short: { day: 'numeric', month: 'short' },
   /** 23 November 2026 */

@@ -68,12 +68,12 @@ export function readyWords(day: Day): string {
 /** How many evenings the water was ready, as a sentence. */
 export function readySentence(evenings: Totals['readyEvenings'], days: number, time: string): string {
   const { met, known: sure } = evenings;
-  if (sure === 0) return `Whether the water was ready at ${time} is not known: no tank temperature was logged then.`;
-  const of = sure === days ? `all ${sure}` : `${sure} of ${days}`;
+  if (sure === 0) return `Not known whether the water was ready at ${time}`;
+  const of = sure === days ? '' : ` known, of ${days}`;
   if (met === sure)
-    return `The water was ready at ${time} on ${sure === days ? 'every evening' : `all ${counted(sure, 'evening')} that are known`}.`;
-  if (met === 0) return `The water was not ready at ${time} on any of the ${counted(sure, 'evening')} that are known.`;
-  return `The water was ready at ${time} on ${counted(met, 'evening')}${sure === days ? ` of ${sure}` : `; ${of} evenings are known`}.`;
+    return `Ready at ${time} on ${sure === days ? 'every evening' : `all ${counted(sure, 'evening')}${of}`}`;
+  if (met === 0) return `Not ready at ${time} on any of ${counted(sure, 'evening')}${of}`;
+  return `Ready at ${time} on ${met} of ${counted(sure, 'evening')}${of}`;
 }
 
 /** What it is worth and what was not burnt, as a second sentence; null where neither is known. */

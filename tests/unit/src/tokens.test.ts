@@ -17,7 +17,7 @@ function contrast(a: string, b: string): number {
   return (high + 0.05) / (low + 0.05);
 }
 
-/** Colour-vision deficiencies at full severity, on linear RGB: Machado, Oliveira, Fernandes 2009 (from memory). */
+/** Colour-vision deficiencies at full severity, on linear RGB: Machado, Oliveira, Fernandes 2009, severity 1.0 (second-hand). */
 const EYES: Record<string, [Rgb, Rgb, Rgb]> = {
   'usual eyes': [
     [1, 0, 0],

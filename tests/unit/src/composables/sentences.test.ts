@@ -61,10 +61,10 @@ describe('daySentence', () => {
 describe('readySentence', () => {
   it.each([
     [{ met: 7, known: 7 }, 7, 'on every evening'],
-    [{ met: 3, known: 7 }, 7, 'on 3 evenings of 7'],
-    [{ met: 0, known: 7 }, 7, 'not ready at 18:00 on any of the 7 evenings'],
-    [{ met: 4, known: 5 }, 7, '5 of 7 evenings are known'],
-    [{ met: 0, known: 0 }, 7, 'not known'],
+    [{ met: 3, known: 7 }, 7, 'Ready at 18:00 on 3 of 7 evenings'],
+    [{ met: 0, known: 7 }, 7, 'Not ready at 18:00 on any of 7 evenings'],
+    [{ met: 4, known: 5 }, 7, 'on 4 of 5 evenings known, of 7'],
+    [{ met: 0, known: 0 }, 7, 'Not known'],
   ])('%o of %s days: %s', (evenings, days, part) => expect(readySentence(evenings, days, '18:00')).toContain(part));
 });
 
