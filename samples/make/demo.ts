@@ -1,3 +1,4 @@
+import { setTimeout as pause } from 'node:timers/promises';
 import { pathToFileURL } from 'node:url';
 import { Caller, DemoFailure } from './caller.ts';
 import { civilDate, dayNumber, ZoneClock } from './civil.ts';
@@ -143,6 +144,8 @@ async function bring(
   for (const [from, logs] of wanted) {
     tell(`writing the invented logs of ${demo.property.name}, ${from} to ${yesterday}`);
     const files = demoFiles(demo, first, from, yesterday);
+    // Writing takes seconds without a pause, in which the product may have closed an idle connection: let that be seen.
+    await pause(20);
     for (const log of logs) {
       const form = new FormData();
       form.append('plan', JSON.stringify(log.plan));
