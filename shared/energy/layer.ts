@@ -48,6 +48,7 @@ export interface LogLayer extends Layer {
  * One channel as pieces of time that do not overlap: within a piece the value runs straight from
  * `v0` at `t0` to `v1` at `t1`. Time in no piece is unknown, not zero.
  * Units: electricity and fuel in W (mean power over the piece), temperature in °C, state 0 or 1.
+ * Arrays may share memory with one another (`v0` and `v1` of means are one array): they are for reading only.
  * Fuel written as volume stays a volume: then `volumetric` is true and values are m³/h.
  */
 export interface Trace {
@@ -63,6 +64,17 @@ export interface Trace {
   /** Nominal interval in seconds of the log that speaks most in this trace. */
   intervalSeconds: number;
   volumetric: boolean;
+  kind: Kind;
+  /** Which log speaks when, in order of time. */
+  runs: TraceRun[];
+}
+
+/** A stretch of a trace in which one log speaks; the outermost may be unbounded. */
+export interface TraceRun {
+  from: number;
+  to: number;
+  log: number;
+  intervalSeconds: number;
   kind: Kind;
 }
 

@@ -9,6 +9,8 @@ const SHORT_ABOVE_C = 120;
 const ISOLATED_K = 5;
 /** 3 kW on 200 l is 12.9 K/h; a hundred times that is no water. Kelvin per minute, with ISOLATED_K to spare. */
 const IMPOSSIBLE_K_PER_MINUTE = 5;
+/** A burst of impossible values is at most so long; what stays away longer is another state of the sensor. */
+const BURST_MS = 30 * 60_000;
 
 /** Whether a temperature can only be a sensor's fault, judged by itself. */
 export function isFaultValue(value: number): boolean {
@@ -16,6 +18,8 @@ export function isFaultValue(value: number): boolean {
 }
 
 export interface Kept {
+  /** The instants kept, with a free slot before and after; `null` where all were kept. */
+  t: Float64Array | null;
   n: number;
   dropped: number;
   /** The instant of the first value that was dropped, NaN if none. */
@@ -23,42 +27,65 @@ export interface Kept {
 }
 
 /**
- * Leaves fault values out of a temperature series, in place: −127, open and short circuit; 85.0 exactly when its
- * neighbours are elsewhere; a single value that jumps away and back faster than water can.
+ * Leaves fault values out of a temperature series: −127, open and short circuit; 85.0 exactly when its neighbours are
+ * elsewhere; values that jump away and back faster than water can.
  *
  * @param t instants in ms, ascending
- * @param v °C
+ * @param v °C, packed in place
  */
 export function dropFaults(t: Float64Array, v: Float64Array, n: number): Kept {
-  let kept = 0;
+  let first = 0;
+  while (first < n && !suspect(t, v, n, first, first - 1)) first++;
+  if (first === n) return { t: null, n, dropped: 0, at: NaN };
+  const kept = new Float64Array(n + 2);
+  kept.set(t.subarray(0, first), 1);
+  let size = first;
   let at = NaN;
-  for (let i = 0; i < n; i++) {
-    if (isFaultValue(v[i]) || isolated(t, v, n, i, kept)) {
+  for (let i = first; i < n; i++) {
+    const last = size - 1;
+    const lastAt = kept[size];
+    if (isFaultValue(v[i]) || isolated(t, v, n, i, last, lastAt)) {
       if (at !== at) at = t[i];
       continue;
     }
-    t[kept] = t[i];
-    v[kept++] = v[i];
+    kept[size + 1] = t[i];
+    v[size++] = v[i];
   }
-  return { n: kept, dropped: n - kept, at };
+  return { t: kept, n: size, dropped: n - size, at };
 }
 
-function isolated(t: Float64Array, v: Float64Array, n: number, i: number, kept: number): boolean {
-  const jump = (a: number, b: number, from: number, to: number) =>
-    Math.abs(a - b) > ISOLATED_K + (IMPOSSIBLE_K_PER_MINUTE * Math.abs(to - from)) / 60_000;
-  let next = i + 1;
-  while (next < n && (isFaultValue(v[next]) || (v[next] === v[i] && v[i] === POWER_ON_C))) next++;
-  const before = kept > 0 ? kept - 1 : -1;
+/** A quick look, which most values pass: nothing odd about this one against the one before. */
+function suspect(t: Float64Array, v: Float64Array, n: number, i: number, before: number): boolean {
+  const value = v[i];
+  if (value === POWER_ON_C || isFaultValue(value)) return true;
+  return before >= 0 && jumps(value - v[before], t[i] - t[before]) && isolated(t, v, n, i, before, t[before]);
+}
+
+function jumps(kelvin: number, ms: number): boolean {
+  return Math.abs(kelvin) > ISOLATED_K + (IMPOSSIBLE_K_PER_MINUTE * ms) / 60_000;
+}
+
+/** @param last index of the last value kept (at `lastAt`), −1 if none */
+function isolated(t: Float64Array, v: Float64Array, n: number, i: number, last: number, lastAt: number): boolean {
   if (v[i] === POWER_ON_C) {
-    const offBefore = before >= 0 ? Math.abs(v[before] - v[i]) > ISOLATED_K : null;
+    let next = i + 1;
+    while (next < n && (isFaultValue(v[next]) || v[next] === POWER_ON_C)) next++;
+    const offBefore = last >= 0 ? Math.abs(v[last] - v[i]) > ISOLATED_K : null;
     const offAfter = next < n ? Math.abs(v[next] - v[i]) > ISOLATED_K : null;
     if (offBefore === null && offAfter === null) return false;
     return offBefore !== false && offAfter !== false;
   }
-  if (before < 0 || next >= n) return false;
+  if (last < 0 || !jumps(v[i] - v[last], t[i] - lastAt)) return false;
+  for (let next = i + 1; next < n && t[next] - t[i] <= BURST_MS; next++) {
+    if (isFaultValue(v[next]) || !jumps(v[next] - v[i], t[next] - t[next - 1])) continue;
+    if (!jumps(v[next] - v[last], t[next] - lastAt)) return true;
+  }
+  // At long steps the next reading alone decides.
+  const next = i + 1;
   return (
-    jump(v[i], v[before], t[before], t[i]) &&
-    jump(v[i], v[next], t[i], t[next]) &&
-    !jump(v[before], v[next], t[before], t[next])
+    next < n &&
+    t[next] - t[i] > BURST_MS &&
+    jumps(v[next] - v[i], t[next] - t[i]) &&
+    !jumps(v[next] - v[last], t[next] - lastAt)
   );
 }

@@ -69,6 +69,21 @@ export function integrate(cursor: Cursor, from: number, to: number): Sum {
   return { total, spread, any, coveredMs: covered, assumedMs: assumed };
 }
 
+/** The integral of pieces from index `first` on over [from, to), in W·ms (or as the unit of the values has it). */
+export function integralOf(p: PiecesLike, first: number, from: number, to: number): number {
+  const { t0, t1, v0, v1, length } = p;
+  let sum = 0;
+  for (let i = first; i < length && t0[i] < to; i++) {
+    const a = Math.max(t0[i], from);
+    const b = Math.min(t1[i], to);
+    const slope = (v1[i] - v0[i]) / (t1[i] - t0[i]);
+    sum += (v0[i] + slope * ((a + b) / 2 - t0[i])) * (b - a);
+  }
+  return sum;
+}
+
+type PiecesLike = Pick<Trace, 't0' | 't1' | 'v0' | 'v1' | 'length'>;
+
 /** The straight piece of every trace over a stretch in which none of them bends. */
 export type Stretch = (from: number, to: number, starts: Float64Array, ends: Float64Array) => void;
 
