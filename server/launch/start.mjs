@@ -1,5 +1,5 @@
 import { spawn } from 'node:child_process';
-import { randomBytes } from 'node:crypto';
+import { createHash, randomBytes } from 'node:crypto';
 import fs from 'node:fs';
 import path from 'node:path';
 import { build, ENTRIES } from './build.mjs';
@@ -18,6 +18,7 @@ const HEALTHY_MS = 120_000;
 /** A process that ends so often before the first healthy answer will not get better by itself. */
 const HOPELESS = 3;
 
+const PEOPLE_MADE = path.join(DATA, 'demo-people');
 const VITE = ['node_modules/vite/bin/vite.js', '--clearScreen', 'false'];
 
 const dev = process.argv.includes('--dev');
@@ -55,7 +56,7 @@ async function start() {
 
   const kept = [keep('web', entry('main'), settings), keep('worker', entry('worker'), settings)];
   if (dev) keep('client', [...VITE, '--port', String(port)], settings);
-  await Promise.all([healthy(inside, kept), password ? command('people', [], settings) : null]);
+  await Promise.all([healthy(inside, kept), password ? demoPeople(settings) : null]);
   if (password) await command('demo', [inside], settings);
   process.stdout.write(
     `Coppernoon is ready at ${address.replace(/\/$/, '')}\n${password ? `demo password: ${password}\n` : ''}`,
@@ -129,12 +130,24 @@ async function healthy(inside, kept) {
   if (lost) throw new Refusal(`The ${lost.name} process does not start. The end of ${lost.log}:\n${tail(lost.log)}`);
 }
 
-/** Runs a command of the product to its end; what it says goes to our error stream. */
+/** Makes the demo's people, unless that was done for this database and password. */
+async function demoPeople(settings) {
+  const wanted = createHash('sha256')
+    .update(`${env.DATABASE_URL ?? ''}\n${settings.DEMO_PASSWORD}`)
+    .digest('hex');
+  if (fs.existsSync(PEOPLE_MADE) && fs.readFileSync(PEOPLE_MADE, 'utf8') === wanted) return;
+  await command('people', [], settings);
+  fs.writeFileSync(PEOPLE_MADE, wanted, { mode: 0o600 });
+}
+
+/** Runs a command of the demo to its end; what it says goes to our error stream. */
 async function command(name, args, settings) {
   const { code } = await run(process.execPath, [...entry(name, { watch: false }), ...args], {
     cwd: ROOT,
     env: settings,
   });
-  if (code !== 0)
-    throw new Refusal('The demo could not be loaded; the reason stands above. Without it: DEMO=off npm start');
+  if (code === 0) return;
+  // Should its people be the reason, the next start makes them anew.
+  fs.rmSync(PEOPLE_MADE, { force: true });
+  throw new Refusal('The demo could not be loaded; the reason stands above. Without it: DEMO=off npm start');
 }
