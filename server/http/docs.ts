@@ -62,6 +62,7 @@ export function docsPage(document: unknown, address: string): string {
 <meta charset="utf-8">
 <meta name="viewport" content="width=device-width, initial-scale=1">
 <title>${text(info.title)}: the HTTP API</title>
+<link rel="icon" href="data:,">
 <link rel="stylesheet" href="/api/docs/style.css">
 </head>
 <body>

@@ -2,33 +2,44 @@ import { randomUUID } from 'node:crypto';
 import type { RequestHandler } from 'express';
 import { pino } from 'pino';
 import type { DestinationStream, Logger } from 'pino';
-import { pinoHttp } from 'pino-http';
+
+declare module 'express-serve-static-core' {
+  interface Request {
+    id: string;
+    /** Logs with the request's id. */
+    log: Logger;
+  }
+}
 
 /** JSON lines; nothing that names a person or opens a door is written. */
 export function makeLogger(level: string, destination?: DestinationStream): Logger {
   return pino({ level, base: undefined, timestamp: pino.stdTimeFunctions.isoTime }, destination);
 }
 
+const SAFE = new Set(['GET', 'HEAD', 'OPTIONS']);
+
 /**
- * Gives each request an id, which the answer carries, and logs it with its outcome. The path is logged
- * without its query; headers, bodies and network addresses are not.
+ * Gives each request an id, which the answer carries, and logs it when it is over: failures of ours as
+ * errors, what changes something as info, the rest for those who debug. The path is logged without its query; headers,
+ * bodies and network addresses are not.
  */
 export function requestLog(logger: Logger): RequestHandler {
-  return pinoHttp({
-    logger,
-    genReqId: (_req, res) => {
-      const id = randomUUID();
-      res.setHeader('X-Request-Id', id);
-      return id;
-    },
-    serializers: {
-      req: ({ id, method, url }: { id: string; method: string; url: string }) => ({
-        id,
-        method,
-        path: url.split('?', 1)[0],
-      }),
-      res: ({ statusCode }: { statusCode: number }) => ({ status: statusCode }),
-    },
-    customLogLevel: (_req, res, error) => (error || res.statusCode >= 500 ? 'error' : 'debug'),
-  });
+  return (req, res, next) => {
+    const id = (req.id = randomUUID());
+    const started = performance.now();
+    const { method, path } = req;
+    let log: Logger | undefined;
+    Object.defineProperty(req, 'log', { get: () => (log ??= logger.child({ request: id })) });
+    res.setHeader('X-Request-Id', id);
+    res.on('close', () => {
+      const level = res.statusCode >= 500 ? 'error' : SAFE.has(method) ? 'debug' : 'info';
+      if (!logger.isLevelEnabled(level)) return;
+      const ms = Math.round(performance.now() - started);
+      req.log[level](
+        { method, path, status: res.statusCode, ms, ...(!res.writableFinished && { cut: true }) },
+        'request',
+      );
+    });
+    next();
+  };
 }

@@ -1,5 +1,5 @@
 import express from 'express';
-import type { Request, RequestHandler, Response, Router } from 'express';
+import type { RequestHandler, Router } from 'express';
 import { z } from 'zod';
 import type { Deps } from '../deps.ts';
 import { admit } from './access.ts';
@@ -26,39 +26,45 @@ const json = express.json({ limit: BODY_LIMIT, type: ['json', '+json'] });
  */
 export function routerOf(deps: Deps, routes: readonly Route[]): Router {
   const router = express.Router({ caseSensitive: true });
-  const methods = new Map<string, string[]>();
-  for (const route of routes) {
-    const body = route.body;
-    router[route.method](
-      route.path,
-      async (req, res, next) => {
-        res.locals.admission = await admit(deps, route.policy, req, res);
-        next();
-      },
-      ...(body ? [expectType(isRaw(body) ? body.contentType : 'application/json')] : []),
-      ...(body && !isRaw(body) ? [json] : []),
-      validate(route),
-      ...(route.before?.(deps) ?? []),
-      handlerOf(deps, route),
-    );
-    methods.set(route.path, [...(methods.get(route.path) ?? []), route.method.toUpperCase()]);
-  }
-  for (const [path, allowed] of methods) {
-    const list = allowed.includes('GET') ? ['HEAD', ...allowed] : allowed;
-    router.all(path, () => {
-      throw problem('method-not-allowed', `This address takes ${list.join(', ')}.`, {
-        headers: { Allow: list.join(', ') },
-      });
+  for (const [path, some] of byPath(routes)) {
+    const at = router.route(path);
+    for (const route of some) at[route.method](...stepsOf(deps, route));
+    const methods = some.map((route) => route.method.toUpperCase());
+    const allow = [...(methods.includes('GET') ? ['HEAD'] : []), ...methods].join(', ');
+    at.all(() => {
+      throw problem('method-not-allowed', `This address takes ${allow}.`, { headers: { Allow: allow } });
     });
   }
   return router;
+}
+
+function byPath(routes: readonly Route[]): Map<string, Route[]> {
+  const paths = new Map<string, Route[]>();
+  for (const route of routes) paths.set(route.path, [...(paths.get(route.path) ?? []), route]);
+  return paths;
+}
+
+function stepsOf(deps: Deps, route: Route): RequestHandler[] {
+  const { body } = route;
+  return [
+    async (req, res, next) => {
+      res.locals.admission = await admit(deps, route.policy, req, res);
+      next();
+    },
+    ...(body ? [expectType(isRaw(body) ? body.contentType : 'application/json')] : []),
+    ...(body && !isRaw(body) ? [json] : []),
+    validate(route),
+    ...(route.before?.(deps) ?? []),
+    handlerOf(deps, route),
+  ];
 }
 
 function expectType(contentType: string): RequestHandler {
   return (req, _res, next) => {
     // Without any body the schema says what is missing; a body of another type is refused by its type.
     const is = req.is([contentType, contentType === 'application/json' ? '+json' : contentType]);
-    if (is === false && req.get('content-length') !== '0') throw problem('wrong-content-type', `The body must be ${contentType}.`);
+    if (is === false && req.get('content-length') !== '0')
+      throw problem('wrong-content-type', `The body must be ${contentType}.`);
     next();
   };
 }
@@ -72,8 +78,8 @@ function validate(route: Route): RequestHandler {
   };
 }
 
-function handlerOf(deps: Deps, route: Route) {
-  return async (req: Request, res: Response) => {
+function handlerOf(deps: Deps, route: Route): RequestHandler {
+  return async (req, res) => {
     const { params } = req;
     const call = { deps, req, res, params, ...res.locals.fields, ...res.locals.admission };
     const answer = (await route.handle(call as unknown as Parameters<Route['handle']>[0])) as

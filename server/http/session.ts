@@ -1,5 +1,5 @@
 import pgSession from 'connect-pg-simple';
-import type { Request, RequestHandler } from 'express';
+import type { Request, RequestHandler, Response } from 'express';
 import session from 'express-session';
 import { Passport } from 'passport';
 import { Strategy } from 'passport-local';
@@ -70,10 +70,11 @@ export async function signingSecret(db: Database): Promise<string> {
  */
 export function callers(deps: Deps, passport: PassportInstance, secret: string): RequestHandler[] {
   const secure = isSecure(deps);
+  const name = cookieName(deps, 'session');
   const Store = pgSession(session);
   const cookie = [
     session({
-      name: cookieName(deps, 'session'),
+      name,
       secret,
       store: new Store({ pool: deps.db.pool, tableName: 'sessions', pruneSessionInterval: false, disableTouch: true }),
       resave: false,
@@ -84,10 +85,13 @@ export function callers(deps: Deps, passport: PassportInstance, secret: string):
     limitAge(deps),
     passport.session(),
   ];
-  const unlessToken =
+  // Whoever has no session and begins none needs no session made for them.
+  const isCookieCall = (req: Request, res: Response) =>
+    !res.locals.caller && (req.method === 'POST' || (req.headers.cookie?.includes(name) ?? false));
+  const whereCookie =
     (handler: RequestHandler): RequestHandler =>
     (req, res, next) =>
-      res.locals.caller ? next() : handler(req, res, next);
+      isCookieCall(req, res) ? handler(req, res, next) : next();
   return [
     (req, _res, next) => {
       // People reach us by the configured https address only, whatever the last hop before us spoke.
@@ -99,7 +103,7 @@ export function callers(deps: Deps, passport: PassportInstance, secret: string):
       if (token !== null) res.locals.caller = { person: await personByToken(deps.db, token), by: 'token' };
       next();
     },
-    ...cookie.map(unlessToken),
+    ...cookie.map(whereCookie),
     (req, res, next) => {
       const person = (req.user as Person | undefined) ?? null;
       res.locals.caller ??= { person, by: person ? 'cookie' : null };
