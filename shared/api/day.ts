@@ -79,6 +79,7 @@ export const Totals = Day.extend({
   to: CivilDate,
   days: z.int(),
   completeDays: z.int(),
+  completeDaysBy: z.partialRecord(z.enum(FIGURES), z.int()).optional(),
   currency: z.string().nullable(),
   readyEvenings: z.object({ met: z.int(), known: z.int() }),
 }).meta({ id: 'Totals' });

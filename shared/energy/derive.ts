@@ -4,21 +4,19 @@ import type { DatedSystem, DatedTariff } from '../api/property.ts';
 import { civilDay, DAY_MS, type Zone, zoneOf } from '../time/zone.ts';
 import { CHANNELS, type Channel } from '../units/channels.ts';
 import { gasKwh, gasM3 } from '../units/convert.ts';
-import { boughtByImport, darkness, FINE_SECONDS } from './bought.ts';
 import { carbonFactors } from './carbon.ts';
+import { COMPLETE } from './complete.ts';
+import { darkness, union } from './darkness.ts';
 import { DEFAULTS } from './defaults.ts';
 import { calorificValue, hotWaterEfficiency } from './fuel.ts';
 import type { Home } from './home.ts';
-import type { Trace } from './layer.ts';
-import { withoutNegatives } from './negatives.ts';
-import { Cursor, integrate, type Sum, together } from './sums.ts';
+import { type Bought, type Flows, flowsOf, inWh } from './flows.ts';
+import { type Cleaned, coveredBy, type Stretches, withoutNegatives } from './negatives.ts';
+import { Cursor, integrate, leastOf, type Sum } from './sums.ts';
 import { tankOfDay, tankSensor } from './tank.ts';
-import { inForce, priceSteps, type Price } from './tariff.ts';
+import { inForce, type PriceStep, priceSteps } from './tariff.ts';
 import type { TraceSet } from './trace.ts';
 import { coldFeedC, litresAt40 } from './water.ts';
-
-/** A day is complete for a figure when each of its channels covers this share of it. */
-export const COMPLETE = 0.95;
 
 const HOUR_MS = 3_600_000;
 
@@ -38,17 +36,17 @@ export interface DeriveInput {
 export function deriveDays({ traces, dates, home }: DeriveInput): Day[] {
   const zone = zoneOf(home.timeZone);
   const cursors = new Map<Channel, Cursor>();
-  const notes = new Map<Channel, string>();
+  const cleaned = new Map<Channel, Cleaned>();
   for (const [channel, trace] of traces.traces) {
     if (!NOT_NEGATIVE.has(channel)) {
       cursors.set(channel, new Cursor(trace));
       continue;
     }
-    const cleaned = withoutNegatives(trace);
-    cursors.set(channel, new Cursor(cleaned.trace));
-    if (cleaned.unknown) notes.set(channel, 'negative values beyond a meter’s idle jitter: that time is unknown');
+    const clean = withoutNegatives(trace);
+    cursors.set(channel, new Cursor(clean.trace));
+    cleaned.set(channel, clean);
   }
-  return dates.map((date) => new DayBook(date, zone, home, cursors, notes).day());
+  return dates.map((date) => new DayBook(date, zone, home, cursors, cleaned).day());
 }
 
 const NOT_NEGATIVE: ReadonlySet<Channel> = new Set([
@@ -60,10 +58,11 @@ const NOT_NEGATIVE: ReadonlySet<Channel> = new Set([
   'gas',
 ]);
 
-const round = (value: number, digits = 6) => {
-  const rounded = Number(value.toFixed(digits));
-  return rounded === 0 ? 0 : rounded;
-};
+/** Rounds to so many decimals, without a negative zero. */
+const round = (value: number, digits = 6) => Math.round(value * 10 ** digits) / 10 ** digits + 0;
+
+/** Longest step at which import and heater can be set against each other by instant, seconds. */
+const FINE_SECONDS = 300;
 
 /** Works out one day; each method fills in the figures that its name says. */
 class DayBook {
@@ -85,7 +84,7 @@ class DayBook {
     private readonly zone: Zone,
     private readonly home: Home,
     private readonly cursors: ReadonlyMap<Channel, Cursor>,
-    notes: ReadonlyMap<Channel, string>,
+    cleaned: ReadonlyMap<Channel, Cleaned>,
   ) {
     const { start, end } = zone.dayBounds(date);
     this.from = start;
@@ -95,14 +94,18 @@ class DayBook {
     for (const name of FIGURES) this.figures[name] = null;
     for (const channel of CHANNELS) {
       const cursor = cursors.get(channel);
-      if (!cursor) continue;
+      // What a signed channel says stands under its two sides.
+      if (!cursor || channel === 'grid') continue;
       const sum = integrate(cursor, this.from, this.to);
-      if (sum.spread) this.spread[channel] = round(sum.spread / 1000);
+      if (sum.spread) this.spread[channel] = round(this.inKwh(channel, sum.spread) ?? 0);
       if (!sum.any) continue;
       this.sums.set(channel, sum);
-      this.coverage[channel] = round(sum.coveredMs / (this.to - this.from), 6);
-      const note = notes.get(channel);
-      if (note && this.coverage[channel] !== 1) this.told.push(`${channel}: ${note}`);
+      this.coverage[channel] = Math.min(1, round(sum.coveredMs / (this.to - this.from)));
+    }
+    for (const [channel, { zeroed, unknown }] of cleaned) {
+      if (coveredBy(unknown, this.from, this.to))
+        this.told.push(`${channel}: negative values beyond a meter’s idle jitter leave their time unknown`);
+      if (coveredBy(zeroed, this.from, this.to)) this.told.push(`${channel}: small negative values count as zero`);
     }
   }
 
@@ -111,7 +114,6 @@ class DayBook {
     this.metered('importKwh', 'import');
     this.metered('generationKwh', 'generation');
     const heat = this.heat();
-    if (heat) this.surplusCaught(heat);
     const useful = heat && this.usefulHeat(heat);
     this.fuelMeasured();
     const displaced = useful === null ? null : this.displaced(useful);
@@ -159,89 +161,106 @@ class DayBook {
     else this.set(name, sum.total / 1000, sum.assumedMs > 0 ? 'assumed' : 'measured');
   }
 
+  /** Energy of a trace's sum in kWh; `null` where a volume's calorific value is not known. */
+  private inKwh(channel: Channel, sum: number): number | null {
+    if (!this.cursors.get(channel)?.trace.volumetric) return sum / 1000;
+    const cv = calorificValue(this.system.boiler);
+    if (cv === null) return null;
+    return this.system.boiler.fuel === 'gas' ? gasKwh(sum, cv) : sum * 1000 * cv;
+  }
+
   /** Heater energy and how much of it was bought: by instant against import, else by the dark and the cheap hours. */
   private heat(): Heat | null {
-    const heaters = HEATERS.filter((channel) => this.sums.has(channel));
-    if (!heaters.length) return null;
-    const cursors = heaters.map((channel) => this.cursors.get(channel) as Cursor);
-    const total = heaters.reduce((sum, channel) => sum + (this.sums.get(channel) as Sum).total, 0);
+    const logged = HEATERS.filter((channel) => this.sums.has(channel));
+    if (!logged.length) return null;
+    const heaters = logged.map((channel) => this.cursors.get(channel) as Cursor);
     const metered = this.system.diversionIs === 'estimated' ? 'assumed' : 'measured';
+    const steps = this.tariff ? priceSteps(this.tariff, this.zone, this.from, this.to) : [];
+    const instants = steps.length ? steps.map(({ at }) => at) : [this.from];
+    const total =
+      heaters.length > 1
+        ? heatOf(this.walk(heaters, { dark: [] }, undefined, [this.from]))
+        : (this.sums.get(logged[0]) as Sum).total;
+    if (total === null) {
+      for (const name of OF_DIVERSION) this.unknown(name, 'the two heaters were never logged at the same time');
+      return null;
+    }
     this.set('heaterKwh', total / 1000, metered);
-    const imported = this.sums.has('import') ? this.cursors.get('import') : undefined;
-    const fine = imported && [imported, ...cursors].every((c) => c.trace.intervalSeconds <= FINE_SECONDS);
-    const heat: Heat = { cursors, total, bought: 0, boughtIn: () => 0, rests: 'workedOut' };
-    if (fine) {
-      heat.boughtIn = (a, b) => boughtByImport(cursors, imported, a, b) ?? 0;
-      heat.bought = heat.boughtIn(this.from, this.to);
-    } else {
-      const stretches = this.notTheSun();
-      if (!stretches) heat.rests = 'assumed';
-      else {
-        heat.boughtIn = (a, b) => {
-          let sum = 0;
-          for (const [s, e] of stretches)
-            if (s < b && e > a)
-              for (const cursor of cursors) sum += integrate(cursor, Math.max(s, a), Math.min(e, b)).total;
-          return sum;
-        };
-        heat.bought = heat.boughtIn(this.from, this.to);
-      }
+    const [bought, known] = this.boughtBy(heaters, steps);
+    const exported = this.sums.has('export') ? this.cursors.get('export') : undefined;
+    const flows = this.walk(heaters, bought, exported, instants);
+    if (!flows.coveredMs) {
+      for (const name of OF_DIVERSION)
+        if (name !== 'heaterKwh')
+          this.unknown(name, 'import and heater were never logged at the same time on this day');
+      return null;
     }
-    this.set('boughtHeatKwh', heat.bought / 1000, heat.rests);
-    if (heat.rests === 'assumed')
+    const sums = { steps, flows, diverted: sumOf(flows.diverted), bought: sumOf(flows.bought) };
+    this.set('boughtHeatKwh', sums.bought / 1000, known ? 'workedOut' : 'assumed');
+    if (!known)
       this.told.push('Without import readings or the property’s place, all heater energy is taken as diverted.');
-    const rests =
-      metered === 'assumed' || heat.rests === 'assumed' ? 'assumed' : heat.bought > 0 ? 'workedOut' : metered;
-    this.set('divertedKwh', (total - heat.bought) / 1000, rests);
-    return heat;
+    const rests = metered === 'assumed' || !known ? 'assumed' : sums.bought > 0 ? 'workedOut' : metered;
+    this.set('divertedKwh', sums.diverted / 1000, rests);
+    this.surplusCaught(flows, rests);
+    return sums;
   }
 
-  /** Stretches in which heater energy cannot be surplus: darkness, and recorded off-peak windows; null if unknown. */
-  private notTheSun(): [number, number][] | null {
+  private walk(heaters: readonly Cursor[], bought: Bought, exported: Cursor | undefined, steps: number[]): Flows {
+    return inWh(flowsOf(heaters, bought, exported, steps, this.from, this.to));
+  }
+
+  /** How bought heat is told apart on this day, and whether it is known at all. */
+  private boughtBy(heaters: readonly Cursor[], steps: readonly PriceStep[]): [Bought, known: boolean] {
+    const imported = this.sums.has('import') ? this.cursors.get('import') : undefined;
+    if (imported && [imported, ...heaters].every((cursor) => this.stepOf(cursor) <= FINE_SECONDS))
+      return [{ import: imported }, true];
     const { latitude, longitude } = this.home;
-    const stretches = latitude !== null && longitude !== null ? darkness(this.from, this.to, latitude, longitude) : [];
-    const windows = this.tariff ? priceSteps(this.tariff, 'importPerKwh', this.zone, this.from, this.to) : [];
-    windows.forEach(({ at, price }, i) => {
-      if (this.tariff && price < this.tariff.importPerKwh) stretches.push([at, windows[i + 1]?.at ?? this.to]);
+    const placed = latitude !== null && longitude !== null;
+    const dark = placed ? darkness(this.from, this.to, latitude, longitude) : [];
+    const cheap: Stretches = [];
+    steps.forEach(({ at, importPerKwh }, i) => {
+      if (this.tariff && importPerKwh < this.tariff.importPerKwh) cheap.push([at, steps[i + 1]?.at ?? this.to]);
     });
-    if (!stretches.length && latitude === null) return null;
-    return union(stretches);
+    return [{ dark: union([...dark, ...cheap]) }, placed || cheap.length > 0];
   }
 
-  private surplusCaught(heat: Heat): void {
-    const exported = this.cursors.get('export');
-    if (!exported || !this.sums.has('export')) {
-      this.unknown('surplusCaught', 'no export readings on this day');
-      return;
-    }
-    const all = [exported, ...heat.cursors];
-    let out = 0;
-    let heater = 0;
-    let any = false;
-    let bought = 0;
-    together(all, this.from, this.to, (a, b, starts, ends) => {
-      any = true;
-      const h = (b - a) / HOUR_MS;
-      out += ((starts[0] + ends[0]) / 2) * h;
-      for (let k = 1; k < all.length; k++) heater += ((starts[k] + ends[k]) / 2) * h;
-    });
-    if (heat.bought > 0) bought = Math.min(heat.bought, heater);
-    const diverted = heater - bought;
-    if (!any) this.unknown('surplusCaught', 'export and diversion were never logged at the same time on this day');
-    else if (diverted + out <= 0) this.unknown('surplusCaught', 'there was no surplus on this day');
-    else this.set('surplusCaught', diverted / (diverted + out), 'workedOut');
+  /** The longest nominal interval of the logs that speak on this day, seconds. */
+  private stepOf({ trace }: Cursor): number {
+    let longest = 0;
+    for (const { from, to, intervalSeconds } of trace.runs)
+      if (from < this.to && to > this.from && intervalSeconds > longest) longest = intervalSeconds;
+    return longest;
+  }
+
+  private surplusCaught({ divertedThen, exportedThen, sharedMs }: Flows, rests: Rests): void {
+    if (!this.sums.has('export')) this.unknown('surplusCaught', 'no export readings on this day');
+    else if (!sharedMs)
+      this.unknown('surplusCaught', 'export and diversion were never logged at the same time on this day');
+    else if (divertedThen + exportedThen <= 0) this.unknown('surplusCaught', 'there was no surplus on this day');
+    else
+      this.set(
+        'surplusCaught',
+        divertedThen / (divertedThen + exportedThen),
+        rests === 'assumed' ? rests : 'workedOut',
+      );
   }
 
   private usefulHeat(heat: Heat): number {
-    const diverted = (heat.total - heat.bought) / 1000;
+    const diverted = heat.diverted / 1000;
     const f = DEFAULTS.storeFactor.value;
     const useful = this.set('usefulHeatKwh', diverted * f, 'assumed');
     this.ranges.usefulHeatKwh = [round(useful), round(diverted)];
-    const month = Number(this.date.slice(5, 7));
-    const litres = litresAt40(useful, coldFeedC(month, this.home.latitude));
+    const litres = litresAt40(useful, this.coldFeed());
     if (litres === null) this.unknown('litresAt40', 'the cold feed is too warm to count litres at 40 °C');
     else this.set('litresAt40', litres, 'assumed');
     return useful;
+  }
+
+  /** Cold feed, °C: the day's lowest reading of its sensor (its pipe warms while nothing is drawn), else by month. */
+  private coldFeed(): number {
+    const cursor = this.sums.has('coldFeed') ? this.cursors.get('coldFeed') : undefined;
+    const measured = cursor && leastOf(cursor, this.from, this.to);
+    return measured ?? coldFeedC(Number(this.date.slice(5, 7)), this.home.latitude);
   }
 
   /** Fuel not burnt, kWh gross; null for a home without a boiler. */
@@ -277,12 +296,12 @@ class DayBook {
     }
     const cv = calorificValue(this.system.boiler);
     const { fuel } = this.system.boiler;
-    const volumetric = this.cursors.get('gas')?.trace.volumetric ?? false;
-    if (volumetric) {
+    const kwh = this.inKwh('gas', sum.total);
+    if (this.cursors.get('gas')?.trace.volumetric) {
       if (fuel === 'gas' || fuel === 'none') this.set('fuelMeasuredM3', sum.total, 'measured');
       else this.unknown('fuelMeasuredM3', 'this boiler’s fuel is counted in litres');
-      if (cv === null) this.unknown('fuelMeasuredKwh', 'no calorific value is known for this meter’s fuel');
-      else this.set('fuelMeasuredKwh', fuel === 'gas' ? gasKwh(sum.total, cv) : sum.total * 1000 * cv, 'workedOut');
+      if (kwh === null) this.unknown('fuelMeasuredKwh', 'no calorific value is known for this meter’s fuel');
+      else this.set('fuelMeasuredKwh', kwh, 'workedOut');
     } else {
       this.set('fuelMeasuredKwh', sum.total / 1000, 'measured');
       if (fuel === 'gas' && cv !== null) this.set('fuelMeasuredM3', gasM3(sum.total / 1000, cv), 'workedOut');
@@ -299,28 +318,11 @@ class DayBook {
     }
     const fuel = displaced === null ? useful * tariff.importPerKwh : displaced * tariff.fuelPerKwh;
     const gaveUp = (tariff.exportPayment ?? 'metered') === 'metered';
-    const exported = gaveUp ? this.priced(heat, tariff, 'exportPerKwh', (a, b, h) => h - heat.boughtIn(a, b)) : 0;
-    const bought = heat.bought ? this.priced(heat, tariff, 'importPerKwh', (a, b) => heat.boughtIn(a, b)) : 0;
+    const exported = gaveUp ? priced(heat.flows.diverted, heat.steps, 'exportPerKwh') : 0;
+    const bought = priced(heat.flows.bought, heat.steps, 'importPerKwh');
     if (!gaveUp) this.told.push(`Export is paid as ${tariff.exportPayment}: diverting gives nothing up.`);
     this.set('netSaving', fuel - exported - bought, 'workedOut');
     return { fuel: round(fuel), export: round(-exported), bought: round(-bought) };
-  }
-
-  /** Energy (Wh) of each stretch of one price, times that price per kWh. */
-  private priced(
-    heat: Heat,
-    tariff: DatedTariff,
-    price: Price,
-    energy: (from: number, to: number, heaterWh: number) => number,
-  ): number {
-    const steps = priceSteps(tariff, price, this.zone, this.from, this.to);
-    let sum = 0;
-    steps.forEach((step, i) => {
-      const end = steps[i + 1]?.at ?? this.to;
-      const heater = heat.cursors.reduce((wh, cursor) => wh + integrate(cursor, step.at, end).total, 0);
-      sum += (energy(step.at, end, heater) / 1000) * step.price;
-    });
-    return sum;
   }
 
   private carbon(heat: Heat | null, displaced: number | null): Day['co2Terms'] {
@@ -336,15 +338,14 @@ class DayBook {
       return NO_CARBON;
     }
     const fuel = displaced * factors.fuel;
-    const grid = ((heat.total - heat.bought) / 1000) * factors.electricity;
+    const grid = (heat.diverted / 1000) * factors.electricity;
     this.set('co2SavedKg', fuel - grid, 'workedOut');
     if (factors.year !== year) this.told.push(`Carbon factors are those of ${factors.year}, the latest known.`);
     return { fuel: round(fuel), grid: round(-grid) };
   }
 
   private tank(): Tank {
-    const traces = new Map([...this.cursors].map(([channel, cursor]) => [channel, cursor.trace] as [Channel, Trace]));
-    const sensor = tankSensor(traces, this.system);
+    const sensor = tankSensor((channel) => this.sums.has(channel), this.system);
     const cursor = sensor && this.cursors.get(sensor);
     const [hour, minute] = this.home.ready.time.split(':').map(Number);
     const local = civilDay(this.date) * DAY_MS + hour * HOUR_MS + minute * 60_000;
@@ -370,13 +371,27 @@ class DayBook {
 }
 
 interface Heat {
-  cursors: Cursor[];
+  steps: PriceStep[];
+  flows: Flows;
   /** Wh */
-  total: number;
+  diverted: number;
   bought: number;
-  /** Bought heat, Wh, in a part of the day. */
-  boughtIn: (from: number, to: number) => number;
-  rests: Rests;
+}
+
+function sumOf(values: Float64Array): number {
+  let sum = 0;
+  for (const value of values) sum += value;
+  return sum;
+}
+
+/** All heater energy of a walk without bought heat, Wh; `null` where the heaters never cover the same time. */
+function heatOf({ diverted, coveredMs }: Flows): number | null {
+  return coveredMs ? sumOf(diverted) : null;
+}
+
+/** Wh by price step, times the price of each. */
+function priced(wh: Float64Array, steps: readonly PriceStep[], price: 'importPerKwh' | 'exportPerKwh'): number {
+  return steps.reduce((sum, step, i) => sum + (wh[i] / 1000) * step[price], 0);
 }
 
 const HEATERS = ['diversion', 'diversion2'] as const satisfies readonly Channel[];
@@ -416,13 +431,3 @@ export const NO_TANK: Tank = {
   hygieneHours: null,
   longestHygieneHours: null,
 };
-
-function union(stretches: [number, number][]): [number, number][] {
-  const out: [number, number][] = [];
-  for (const [a, b] of stretches.sort((x, y) => x[0] - y[0])) {
-    const last = out[out.length - 1];
-    if (last && a <= last[1]) last[1] = Math.max(last[1], b);
-    else out.push([a, b]);
-  }
-  return out;
-}

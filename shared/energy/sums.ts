@@ -45,28 +45,33 @@ export function integrate(cursor: Cursor, from: number, to: number): Sum {
   const { t0, t1, v0, v1, flags, length } = cursor.trace;
   let total = 0;
   let spread = 0;
-  let any = false;
   let covered = 0;
   let assumed = 0;
   for (let i = cursor.seek(from); i < length && t0[i] < to; i++) {
     const a = t0[i] < from ? from : t0[i];
     const b = t1[i] > to ? to : t1[i];
     const dt = b - a;
-    let mean = (v0[i] + v1[i]) / 2;
-    if (dt !== t1[i] - t0[i] && v0[i] !== v1[i]) {
-      const slope = (v1[i] - v0[i]) / (t1[i] - t0[i]);
-      mean = v0[i] + slope * ((a + b) / 2 - t0[i]);
-    }
-    const part = (mean * dt) / MS_PER_HOUR;
-    if (flags[i] & PIECE.spread) spread += part;
-    else {
-      any = true;
-      total += part;
+    let twice = v0[i] + v1[i];
+    if (dt !== t1[i] - t0[i] && v0[i] !== v1[i])
+      twice = 2 * v0[i] + ((v1[i] - v0[i]) / (t1[i] - t0[i])) * (a + b - 2 * t0[i]);
+    if (flags[i] === 0) {
+      total += twice * dt;
       covered += dt;
-      if (flags[i] & PIECE.assumed) assumed += dt;
+    } else if (flags[i] & PIECE.spread) spread += twice * dt;
+    else {
+      total += twice * dt;
+      covered += dt;
+      assumed += dt;
     }
   }
-  return { total, spread, any, coveredMs: covered, assumedMs: assumed };
+  const twiceHour = 2 * MS_PER_HOUR;
+  return {
+    total: total / twiceHour,
+    spread: spread / twiceHour,
+    any: covered > 0,
+    coveredMs: covered,
+    assumedMs: assumed,
+  };
 }
 
 /** The integral of pieces from index `first` on over [from, to), in W·ms (or as the unit of the values has it). */
@@ -84,50 +89,19 @@ export function integralOf(p: PiecesLike, first: number, from: number, to: numbe
 
 type PiecesLike = Pick<Trace, 't0' | 't1' | 'v0' | 'v1' | 'length'>;
 
-/** The straight piece of every trace over a stretch in which none of them bends. */
-export type Stretch = (from: number, to: number, starts: Float64Array, ends: Float64Array) => void;
-
-/**
- * Walks the time in [from, to) that all traces cover (spread steps left out), cut so that each is straight within a
- * stretch.
- */
-export function together(cursors: readonly Cursor[], from: number, to: number, each: Stretch): void {
-  const n = cursors.length;
-  const index = cursors.map((c) => c.seek(from));
-  const starts = new Float64Array(n);
-  const ends = new Float64Array(n);
-  let at = from;
-  while (at < to) {
-    let end = to;
-    let skipTo = at;
-    for (let k = 0; k < n; k++) {
-      const { t0, t1, flags, length } = cursors[k].trace;
-      let i = index[k];
-      while (i < length && (t1[i] <= at || flags[i] & PIECE.spread)) i++;
-      index[k] = i;
-      if (i >= length) return;
-      if (t0[i] > at) skipTo = Math.max(skipTo, t0[i]);
-      else if (t1[i] < end) end = t1[i];
-    }
-    if (skipTo > at) {
-      at = skipTo;
-      continue;
-    }
-    for (let k = 0; k < n; k++) {
-      const { t0, t1, v0, v1 } = cursors[k].trace;
-      const i = index[k];
-      if (v0[i] === v1[i]) {
-        starts[k] = v0[i];
-        ends[k] = v0[i];
-      } else {
-        const slope = (v1[i] - v0[i]) / (t1[i] - t0[i]);
-        starts[k] = at === t0[i] ? v0[i] : v0[i] + slope * (at - t0[i]);
-        ends[k] = end === t1[i] ? v1[i] : v0[i] + slope * (end - t0[i]);
-      }
-    }
-    each(at, end, starts, ends);
-    at = end;
+/** The least value of a trace in [from, to), `null` where nothing covers it. */
+export function leastOf(cursor: Cursor, from: number, to: number): number | null {
+  const { t0, t1, v0, v1, length } = cursor.trace;
+  let least = Infinity;
+  for (let i = cursor.seek(from); i < length && t0[i] < to; i++) {
+    const slope = (v1[i] - v0[i]) / (t1[i] - t0[i]);
+    least = Math.min(
+      least,
+      t0[i] < from ? v0[i] + slope * (from - t0[i]) : v0[i],
+      t1[i] > to ? v0[i] + slope * (to - t0[i]) : v1[i],
+    );
   }
+  return least === Infinity ? null : least;
 }
 
 /** The value of a trace at an instant, `null` where nothing covers it. A value at a piece's very end counts. */

@@ -1,19 +1,21 @@
-import { TANK_CHANNELS, type Channel, type TankChannel } from '../units/channels.ts';
+import { TANK_CHANNELS, type TankChannel } from '../units/channels.ts';
 import type { Tank } from '../api/day.ts';
 import type { System } from '../api/property.ts';
-import type { Trace } from './layer.ts';
 import type { Cursor } from './sums.ts';
 import { valueAt } from './sums.ts';
 
 const USUAL_HEIGHT: Record<TankChannel, number> = { tankTop: 0.85, tankMiddle: 0.5, tankBottom: 0.15 };
 
 /** The sensor that speaks for the tank: the top one, else the highest that was logged. */
-export function tankSensor(traces: ReadonlyMap<Channel, Trace>, system: System): TankChannel | null {
-  const height = (channel: TankChannel) =>
-    system.cylinder.sensors?.find((s) => s.channel === channel)?.height ?? USUAL_HEIGHT[channel];
-  const logged = TANK_CHANNELS.filter((channel) => traces.get(channel)?.length);
-  if (logged.includes('tankTop')) return 'tankTop';
-  return logged.sort((a, b) => height(b) - height(a))[0] ?? null;
+export function tankSensor(logged: (channel: TankChannel) => boolean, system: System): TankChannel | null {
+  const there = TANK_CHANNELS.filter(logged);
+  if (there.includes('tankTop')) return 'tankTop';
+  return there.sort((a, b) => sensorHeight(b, system) - sensorHeight(a, system))[0] ?? null;
+}
+
+/** Height of a sensor as a share, as recorded, else where such a sensor usually sits. */
+export function sensorHeight(channel: TankChannel, system: System): number {
+  return system.cylinder.sensors?.find((s) => s.channel === channel)?.height ?? USUAL_HEIGHT[channel];
 }
 
 const HOUR_MS = 3_600_000;

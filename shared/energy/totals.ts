@@ -1,6 +1,7 @@
 import type { Day, FigureName, Rests, Totals } from '../api/day.ts';
 import { FIGURES } from '../api/day.ts';
 import { CHANNELS, type Channel } from '../units/channels.ts';
+import { completeFor } from './complete.ts';
 import { NO_TANK } from './derive.ts';
 
 /** Shares are worked out again from what they are shares of, never added. */
@@ -12,19 +13,35 @@ const SPREAD: Partial<Record<FigureName, readonly Channel[]>> = {
   importKwh: ['import'],
   generationKwh: ['generation'],
   heaterKwh: ['diversion', 'diversion2'],
-  divertedKwh: ['diversion', 'diversion2'],
+  fuelMeasuredKwh: ['gas'],
 };
 
 const RANK: Record<Rests, number> = { measured: 0, workedOut: 1, assumed: 2 };
+
+function weakest(days: readonly Day[], name: FigureName): Rests | undefined {
+  return days
+    .map((day) => day.rests[name])
+    .filter((rest) => rest !== undefined)
+    .sort((a, b) => RANK[b] - RANK[a])[0];
+}
+
+export interface TotalsContext {
+  /** Of the money figures. */
+  currency: string | null;
+  /** Register steps of more than 31 days that end in these days, kWh by channel: they add to the total of the whole. */
+  beyondKwh?: ReadonlyMap<Channel, number>;
+}
 
 /**
  * Adds days up. A sum is `null` where no day has the figure; shares come from complete days only; a figure rests on the
  * weakest of its days.
  *
  * @param days in order, one for each date
- * @param currency of the money figures
+ * @param context the currency, or more
  */
-export function totalOf(days: readonly Day[], currency: string | null): Totals {
+export function totalOf(days: readonly Day[], context: TotalsContext | string | null): Totals {
+  const { currency, beyondKwh }: TotalsContext =
+    context === null || typeof context === 'string' ? { currency: context } : context;
   const figures = {} as Record<FigureName, number | null>;
   const rests: Record<string, Rests> = {};
   const ranges: Record<string, [number, number]> = {};
@@ -32,26 +49,34 @@ export function totalOf(days: readonly Day[], currency: string | null): Totals {
   for (const name of FIGURES) {
     if (SHARES.has(name)) continue;
     const known = days.filter((day) => day[name] !== null);
-    const spread = add((SPREAD[name] ?? []).flatMap((channel) => days.map((day) => day.spreadKwh[channel] ?? null)));
+    const spread = add(
+      (SPREAD[name] ?? []).flatMap((channel) => [
+        ...days.map((day) => day.spreadKwh[channel] ?? null),
+        beyondKwh?.get(channel) ?? null,
+      ]),
+    );
     const sum = add(known.map((day) => day[name]));
     figures[name] = sum === null && spread === null ? null : round((sum ?? 0) + (spread ?? 0));
     if (figures[name] === null) reasons[name] = commonReason(days, name);
-    const weakest = known
-      .map((day) => day.rests[name])
-      .filter((rest) => rest !== undefined)
-      .sort((a, b) => RANK[b] - RANK[a])[0];
-    if (weakest) rests[name] = weakest;
+    const least = weakest(known, name);
+    if (least) rests[name] = least;
     if (known.some((day) => day.ranges[name]))
       ranges[name] = [0, 1].map((end) =>
         round(known.reduce((total, day) => total + (day.ranges[name]?.[end] ?? day[name] ?? 0), 0)),
       ) as [number, number];
   }
   const complete = days.filter((day) => day.complete);
-  figures.surplusCaught = share(complete, 'surplusCaught', 'divertedKwh', 'exportKwh');
-  figures.solarFraction = share(complete, 'solarFraction', 'divertedKwh', null);
-  for (const name of SHARES) {
-    if (figures[name] === null) reasons[name] = complete.length ? commonReason(complete, name) : 'no day is complete';
-    else rests[name] = 'workedOut';
+  const caught = days.filter((day) => completeFor(day, 'surplusCaught') && day.divertedKwh !== null);
+  const solar = days.filter((day) => completeFor(day, 'solarFraction') && day.solarFraction !== null);
+  const diverted = (list: readonly Day[]) => add(list.map((day) => day.divertedKwh));
+  figures.surplusCaught = share(diverted(caught), add(caught.flatMap((day) => [day.divertedKwh, day.exportKwh])));
+  figures.solarFraction = share(diverted(solar), add(solar.flatMap((day) => [day.heaterKwh, day.fuelHeatKwh])));
+  for (const [name, list] of [
+    ['surplusCaught', caught],
+    ['solarFraction', solar],
+  ] as const) {
+    if (figures[name] === null) reasons[name] = list.length ? commonReason(list, name) : 'no day is complete';
+    else rests[name] = weakest(list, name) ?? 'workedOut';
   }
   const hours = days.reduce((sum, day) => sum + day.hours, 0);
   const ready = days.map((day) => day.tank.readyMet).filter((met) => met !== null);
@@ -60,6 +85,9 @@ export function totalOf(days: readonly Day[], currency: string | null): Totals {
     to: days[days.length - 1]?.date ?? '',
     days: days.length,
     completeDays: complete.length,
+    completeDaysBy: Object.fromEntries(
+      FIGURES.map((name) => [name, days.filter((day) => completeFor(day, name)).length]),
+    ),
     hours,
     complete: complete.length === days.length && days.length > 0,
     currency,
@@ -91,20 +119,8 @@ function add(values: readonly (number | null)[]): number | null {
   return known.length ? round(known.reduce((sum, value) => sum + value, 0)) : null;
 }
 
-/** A share over days: its parts are taken back from each day's share and diverted energy. */
-function share(days: readonly Day[], name: FigureName, part: FigureName, rest: FigureName | null): number | null {
-  let whole = 0;
-  let sum = 0;
-  for (const day of days) {
-    const own = day[name];
-    const diverted = day[part];
-    if (diverted === null || own === null) {
-      if (!rest || diverted === null || day[rest] === null) continue;
-    }
-    sum += diverted;
-    whole += own ? diverted / own : diverted + (rest ? (day[rest] ?? 0) : 0);
-  }
-  return whole > 0 ? round(sum / whole) : null;
+function share(part: number | null, whole: number | null): number | null {
+  return part === null || whole === null || whole <= 0 ? null : round(part / whole);
 }
 
 function commonReason(days: readonly Day[], name: FigureName): string {
