@@ -13,6 +13,7 @@ import { systemRoutes } from './http/system.routes.ts';
 import { logRoutes } from './logs/logs.routes.ts';
 import { grantRoutes } from './properties/grants.routes.ts';
 import { propertyRoutes } from './properties/properties.routes.ts';
+import { readingRoutes } from './readings/readings.routes.ts';
 
 /**
  * The web application: never listens, never exits. The whole order of what a request passes is here; what a
@@ -21,7 +22,14 @@ import { propertyRoutes } from './properties/properties.routes.ts';
 export async function createApp(deps: Deps): Promise<Express> {
   const { config, db, logger } = deps;
   const passport = makePassport(deps);
-  const features = [...accountRoutes(passport), ...propertyRoutes, ...grantRoutes, ...logRoutes, ...dayRoutes];
+  const features = [
+    ...accountRoutes(passport),
+    ...propertyRoutes,
+    ...grantRoutes,
+    ...logRoutes,
+    ...dayRoutes,
+    ...readingRoutes,
+  ];
   const routes = [...features, ...systemRoutes(features)];
 
   const app = express();

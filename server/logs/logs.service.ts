@@ -14,7 +14,7 @@ import { leaveTrail } from '../properties/trail.service.ts';
 import { announce, lookUntil } from '../database/notices.ts';
 import * as repository from './logs.repository.ts';
 import type { StoredLog } from './logs.repository.ts';
-import { keepOriginal, OriginalWriter, storageRoom } from './originals.service.ts';
+import { keepOriginal, originalHead, OriginalWriter, storageRoom } from './originals.service.ts';
 import type { Original } from './originals.service.ts';
 import { askToRefresh, workDone } from '../jobs/work.ts';
 
@@ -22,7 +22,9 @@ export { changeLog, findLog, savedPlan, savePlan } from './logs.repository.ts';
 export type { LogChange, StoredLog } from './logs.repository.ts';
 
 /** How much of a file is looked at before it is acknowledged: enough to see that it is a table of readings. */
-const HEAD = 64 * 1024;
+const HEAD = 16 * 1024;
+/** A heading further down than this may lie beyond the head. */
+const LATE_LINE = 50;
 /** How long a withdrawal waits for the figures to follow. */
 const WITHDRAW_MS = 30_000;
 
@@ -149,9 +151,9 @@ export async function inspectionAnswer(
 /** Whether an inspection came to a plan, or to questions about one. */
 export const found = ({ plan, questions }: Inspection) => plan !== null || questions.length > 0;
 
-/** @throws Problem 422 with line and reason where no log was found */
+/** @throws Problem 422 with line and reason where the file is no table of readings, or not one by the plan given */
 function usable(inspection: Inspection): Inspection {
-  if (found(inspection)) return inspection;
+  if (inspection.sample.columns.length > 0 || inspection.problems.length === 0) return inspection;
   throw badFields(
     inspection.problems.map(({ line, column, reason }) => ({
       path: column === null ? 'file' : `file: ${column}`,
@@ -255,7 +257,10 @@ const present = async (tx: Tx, propertyId: string, n: number) => logOf(tx, prope
 const samePlan = (a: ColumnPlan, b: ColumnPlan) =>
   isDeepStrictEqual(JSON.parse(JSON.stringify(a)), JSON.parse(JSON.stringify(b)));
 
-/** Looks at the head of a file, unless it is packed: then the worker finds out. */
+/**
+ * Looks at the head of a file, unless it is packed, or begins so late that its head does not show what it is: then
+ * the worker finds out.
+ */
 function mustBeTable(
   head: Buffer,
   bytes: number,
@@ -264,10 +269,11 @@ function mustBeTable(
   plan: ColumnPlan | null,
 ): void {
   const packed = (head[0] === 0x1f && head[1] === 0x8b) || (head.length > 3 && head.readUInt32BE(0) === 0x504b0304);
-  if (packed) return;
+  const partial = bytes > head.length;
+  if (packed || (partial && (plan?.headerLine ?? 0) > LATE_LINE)) return;
   const summariser = new Summariser(fileName);
   const lastLine = head.lastIndexOf(10);
-  summariser.push(bytes > head.length && lastLine > 0 ? head.subarray(0, lastLine + 1) : head);
+  summariser.push(partial && lastLine > 0 ? head.subarray(0, lastLine + 1) : head);
   usable(inspectSummary(summariser.end(), ctx, plan ?? undefined));
 }
 
@@ -298,6 +304,9 @@ export async function putPlan(
   id: string,
   plan: ColumnPlan,
 ): Promise<StoredLog> {
+  const { original, bytes, fileName } = await logOf(db, propertyId, id);
+  const head = await originalHead(db, propertyId, original, HEAD);
+  mustBeTable(head, bytes, fileName, await contextOf(db, propertyId), plan);
   return db.transaction(async (tx) => {
     await repository.lockLogs(tx, propertyId);
     const { n, status } = await logOf(tx, propertyId, id);

@@ -118,3 +118,9 @@ export async function* originalBytes(db: Database, propertyId: string, hash: Buf
     yield chunk;
   }
 }
+
+/** The first bytes of an original. */
+export async function originalHead(db: Database, propertyId: string, hash: Buffer, bytes: number): Promise<Buffer> {
+  for await (const chunk of originalBytes(db, propertyId, hash)) return chunk.subarray(0, bytes);
+  return Buffer.alloc(0);
+}

@@ -37,7 +37,10 @@ export function refsOfLog(tx: Tx, propertyId: string, log: number): Promise<Bloc
 }
 
 /** First and last day on which any log of the property says something. */
-export async function daySpan(tx: Tx, propertyId: string): Promise<{ first: number; last: number } | null> {
+export async function daySpan(
+  tx: Pick<Scope, 'query'>,
+  propertyId: string,
+): Promise<{ first: number; last: number } | null> {
   const [row] = await tx.query<{ first: number | null; last: number | null }>(
     'select min(utc_day) as first, max(utc_day) as last from log_blocks where property_id = $1',
     [propertyId],
