@@ -5,10 +5,14 @@ import { prepared } from './prepare.ts';
 /** How long open requests may take to end after a signal. */
 const DRAIN_MS = 9000;
 
+/** How long a large log may take to arrive over a slow line; headers keep their own, short limit. */
+const UPLOAD_MS = 60 * 60 * 1000;
+
 const { deps, failed } = await prepared('web');
 const { config, db, logger } = deps;
 const server = createServer(await createApp(deps));
 
+server.requestTimeout = UPLOAD_MS;
 server.on('error', (error) => failed(error));
 server.listen(config.port, config.host, () => {
   const address = server.address();

@@ -71,6 +71,24 @@ describe('every answer', () => {
     }
   });
 
+  it('when something unexpected breaks, then it is shown vaguely and logged whole, under the same request id', async () => {
+    const { agent } = await t.person();
+    await t.db.query('alter table tokens rename to tokens_elsewhere');
+    const answer = await agent.get('/api/tokens');
+    await t.db.query('alter table tokens_elsewhere rename to tokens');
+    expect(answer.status).toBe(500);
+    expect(answer.body).toEqual({
+      type: '/api/docs#problem-unexpected',
+      title: 'Something went wrong on our side',
+      status: 500,
+      detail: expect.any(String),
+      requestId: answer.headers['x-request-id'],
+    });
+    expect(answer.text).not.toMatch(/relation|tokens/);
+    const logged = t.log.filter((line) => line.includes(String(answer.body.requestId))).join('');
+    expect(logged).toContain('relation \\"tokens\\" does not exist');
+  });
+
   it('when the method is not one of the address, then 405 with Allow', async () => {
     const answer = await t.nobody().put('/api/session').send({});
     expect(answer.status).toBe(405);

@@ -1,4 +1,6 @@
+import supertest from 'supertest';
 import { describe, expect, it } from 'vitest';
+import { createApp } from '../../server/app.ts';
 import { ABSOLUTE_MS, IDLE_MS } from '../../server/http/session.ts';
 import { PASSWORD, useApp } from '../support/app.ts';
 
@@ -96,6 +98,18 @@ describe('POST /api/session', () => {
     expect((await attempt(PASSWORD)).status).toBe(429);
     expect((await agent.post('/api/session').send({ email, password: PASSWORD })).status).toBe(200);
     expect((await agent.get('/api/session')).status).toBe(200);
+  });
+
+  it('when failures are spread over two processes, then the limit holds for both together', async () => {
+    const { email } = await t.person();
+    const other = supertest(await createApp(t.deps));
+    const body = { email, password: 'not the password' };
+    for (let i = 0; i < 5; i++) {
+      await t.nobody().post('/api/session').send(body).expect(401);
+      await other.post('/api/session').send(body).expect(401);
+    }
+    await other.post('/api/session').send(body).expect(429);
+    await t.nobody().post('/api/session').send(body).expect(429);
   });
 
   it('when someone signs in often and rightly, then no limit is reached', async () => {
