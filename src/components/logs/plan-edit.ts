@@ -1,4 +1,5 @@
 import type { ColumnPlan, ColumnReading, ColumnRef, PlanColumn, Sample } from '../../../shared/api/plan.ts';
+import { isZone } from '../../../shared/time/zone.ts';
 import { ALLOWED, QUANTITY, type Channel, type Kind, type Unit } from '../../../shared/units/channels.ts';
 
 /** One column of the file, with what the plan makes of it. `index` is its place in `plan.columns`. */
@@ -136,6 +137,14 @@ export function planIssues(plan: ColumnPlan): { path: string; label: string; mes
     issues.push({ path: 'columns', label: 'Columns', message: 'Say of at least one column what it measures.' });
   if (plan.time.columns.length === 0)
     issues.push({ path: 'time.columns', label: 'Time', message: 'Say which column holds the time.' });
+  if (!isZone(plan.time.zone))
+    issues.push({
+      path: 'time.zone',
+      label: 'Zone of the time',
+      message: `“${plan.time.zone}” is no zone: write for example Europe/London, UTC or +01:00.`,
+    });
+  if (plan.time.format.trim() === '')
+    issues.push({ path: 'time.format', label: 'Format of the time', message: 'Write how the time is written.' });
   const lines: [number | null | undefined, string, string, number][] = [
     [plan.headerLine, 'headerLine', 'Line of the headings', 1],
     [plan.skipRows, 'skipRows', 'Rows to pass over', 0],

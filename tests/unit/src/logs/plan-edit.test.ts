@@ -117,6 +117,10 @@ describe('planIssues', () => {
     expect(planIssues({ ...plan, columns: [{ ...relay, on: ['closed'] }] }).map((issue) => issue.path)).toEqual([
       'columns.0.off',
     ]);
+    expect(planIssues({ ...plan, time: { ...plan.time, zone: 'Middle Earth' } }).map((issue) => issue.path)).toEqual([
+      'time.zone',
+    ]);
+    expect(planIssues({ ...plan, headerLine: NaN, columns: [{ ...plan.columns[0], factor: NaN }] })).toHaveLength(2);
     expect(planIssues(plan)).toEqual([]);
   });
 });
