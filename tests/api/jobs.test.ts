@@ -149,7 +149,7 @@ describe('a job', () => {
       runs++;
       return 'done';
     });
-    await until(() => runs === 1);
+    await until(async () => runs === 1 && (await waiting()) === 1);
     const left = await t.db.query<{ key: string; locked_by: string }>(
       'select key, locked_by from graphile_worker._private_jobs',
     );
