@@ -228,7 +228,7 @@ class DayBook {
   private stepOf({ trace }: Cursor): number {
     let longest = 0;
     for (const { from, to, intervalSeconds } of trace.runs)
-      if (from < this.to && to > this.from && intervalSeconds > longest) longest = intervalSeconds;
+      if (from < this.to && to > this.from) longest = Math.max(longest, intervalSeconds || Infinity);
     return longest;
   }
 

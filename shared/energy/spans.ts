@@ -122,6 +122,57 @@ export function firstAfter({ t1, length }: Pieces, at: number): number {
   return low;
 }
 
+/**
+ * Ends what rests on a nominal interval where another log of the same sort has a reading: there is its neighbour. Of an
+ * amount only where the other log has this very reading too, for its interval must stay its own.
+ */
+export function trimEdges(sources: readonly Source[]): void {
+  for (const source of sources) {
+    const { pieces, samples } = source;
+    const { kind, stamp } = samples;
+    if (kind === 'level' || kind === 'register' || samples.hold) continue;
+    const backward = stamp === 'end' && kind !== 'state';
+    let copied = false;
+    for (let i = 0; i < pieces.length; i++) {
+      if (!(pieces.flags[i] & EDGE)) continue;
+      const own = backward ? pieces.t1[i] : pieces.t0[i];
+      const far = backward ? pieces.t0[i] : pieces.t1[i];
+      const near = nearestOther(sources, source, own, far);
+      if (near === far) continue;
+      if (!copied) {
+        // These arrays may be shared with other channels.
+        pieces.t0 = pieces.t0.slice();
+        pieces.t1 = pieces.t1.slice();
+        copied = true;
+      }
+      if (backward) pieces.t0[i] = near;
+      else pieces.t1[i] = near;
+      if (kind === 'energy') pieces.v0[i] = pieces.v1[i] = (pieces.v0[i] * (far - own)) / (near - own);
+    }
+  }
+}
+
+function nearestOther(sources: readonly Source[], source: Source, own: number, far: number): number {
+  const { kind, stamp, hold } = source.samples;
+  let near = far;
+  for (const other of sources) {
+    const { samples } = other;
+    if (other === source || samples.kind !== kind || samples.stamp !== stamp || samples.hold !== hold) continue;
+    const at = atOrBefore(samples, own);
+    if (kind === 'energy' && !sameReading(source.samples, samples, own)) continue;
+    const index = far > own ? at + 1 : samples.t[at] === own ? at - 1 : at;
+    const t = index >= 0 && index < samples.n ? samples.t[index] : far;
+    if (Math.abs(t - own) < Math.abs(near - own)) near = t;
+  }
+  return near;
+}
+
+function sameReading(a: Samples, b: Samples, instant: number): boolean {
+  const i = atOrBefore(a, instant);
+  const k = atOrBefore(b, instant);
+  return i >= 0 && k >= 0 && a.t[i] === instant && b.t[k] === instant && a.v[i] === b.v[k];
+}
+
 /** What the speakers say, cut where they take turns. */
 export function spoken(segments: readonly Segment[]): Pieces {
   const out = newPieces(segments.reduce((sum, { source }) => Math.max(sum, source.pieces.length), 64));

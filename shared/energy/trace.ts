@@ -3,7 +3,7 @@ import { PIECE, type LogLayer, type Trace, type TraceRun } from './layer.ts';
 import { type Pieces, piecesOf, type RegisterNotes } from './pieces.ts';
 import { LogRows } from './samples.ts';
 import { closeGaps, type SeamNotes } from './seams.ts';
-import { firstAfter, type Segment, sideOf, type Source, speakers, spoken } from './spans.ts';
+import { firstAfter, type Segment, sideOf, type Source, speakers, spoken, trimEdges } from './spans.ts';
 import { integralOf } from './sums.ts';
 
 /** What was told while the readings became traces. */
@@ -145,6 +145,7 @@ function traceOf(channel: Channel, all: readonly Source[], { told, beyondKwh }: 
     segments = [{ source: only, from: -Infinity, to: Infinity }];
   } else {
     const conflicts: number[] = [];
+    trimEdges(sources);
     segments = speakers(sources, (from, to, speaks, silent) => {
       if (inside(from, span) && differ(speaks, silent, from, to)) conflicts.push(from);
     });
@@ -158,6 +159,8 @@ function traceOf(channel: Channel, all: readonly Source[], { told, beyondKwh }: 
     if (inside(at, span)) beyondKwh.set(channel, (beyondKwh.get(channel) ?? 0) + amount);
   if (!pieces.length) return null;
   for (let i = 0; i < pieces.length; i++) pieces.flags[i] &= PIECE.assumed | PIECE.spread;
+  // Readings that meet only at seams, one to a file: no log speaks by itself.
+  if (!segments.length) segments = [{ source: sources[sources.length - 1], from: -Infinity, to: Infinity }];
   const main = mainOf(segments);
   return {
     channel,
