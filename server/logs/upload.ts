@@ -1,4 +1,5 @@
 import type { Request, Response } from 'express';
+import type { Readable } from 'node:stream';
 import multer from 'multer';
 import type { StorageEngine } from 'multer';
 import { ColumnPlan } from '../../shared/api/plan.ts';
@@ -32,12 +33,14 @@ export async function receive<Taken>(
     _handleFile: (_req, file, done) => {
       const fileName = shownName(file.originalname);
       const work = async () => {
-        received = { fileName, taken: await take(file.stream, fileName, planOf(req.body)) };
+        received = { fileName, taken: await take(whole(file.stream, maxBytes), fileName, planOf(req.body)) };
       };
       work().then(
         () => done(null, {}),
         (error: unknown) => {
           failure ??= error;
+          // What still comes of the file is let by: cut off, the form would end with another error than this one.
+          file.stream.resume();
           done(error);
         },
       );
@@ -57,6 +60,15 @@ export async function receive<Taken>(
   const { fileName, taken } = received as { fileName: string; taken: Taken };
   return { fileName, taken, plan: planOf(req.body) };
 }
+
+/** A file's bytes; one that was cut off at the limit fails at its end, so that nobody takes the part for the whole. */
+async function* whole(stream: Readable, maxBytes: number): AsyncGenerator<Buffer> {
+  for await (const piece of stream.iterator({ destroyOnReturn: false })) yield piece as Buffer;
+  if ((stream as Readable & { truncated?: boolean }).truncated) throw tooLarge(maxBytes);
+}
+
+const tooLarge = (maxBytes: number) =>
+  problem('too-large', `The file is larger than the ${megabytes(maxBytes)} that are taken at once.`);
 
 function planOf(body: Record<string, unknown> | undefined): ColumnPlan | null {
   const { plan, ...others } = body ?? {};
@@ -84,8 +96,7 @@ function shownName(name: string): string {
 function refusal(error: unknown, failure: unknown, maxBytes: number): unknown {
   if (failure instanceof Problem) return failure;
   if (error instanceof multer.MulterError) {
-    if (error.code === 'LIMIT_FILE_SIZE')
-      return problem('too-large', `The file is larger than the ${megabytes(maxBytes)} that are taken at once.`);
+    if (error.code === 'LIMIT_FILE_SIZE') return tooLarge(maxBytes);
     return badFields([{ path: error.field ?? 'file', message: `this form cannot be taken: ${error.message}` }]);
   }
   const message = error instanceof Error ? error.message : '';
