@@ -83,6 +83,7 @@ async function runChecks() {
 
 async function runVitest(suites, files) {
   const server = suites.some((suite) => ON_DATABASE.includes(suite)) ? await startThrowaway() : null;
+  if (server) ending.lastly(server.stop);
   if (suites.includes('faults')) await build();
   const projects = suites.flatMap((suite) => PROJECTS[suite]);
   const tallyFile = path.join(scratch(), 'vitest.json');
