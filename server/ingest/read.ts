@@ -6,6 +6,7 @@ import { LogRefused } from '../../shared/columns/refusal.ts';
 import type { Layer } from '../../shared/energy/layer.ts';
 import { FastReader, isPlain } from './fast.ts';
 import { type ByteReader, GeneralReader } from './general.ts';
+import { unpacked } from './unpack.ts';
 
 export { LogRefused } from '../../shared/columns/refusal.ts';
 
@@ -17,7 +18,7 @@ export interface LogSink {
   layer(layer: Layer): void | Promise<void>;
   /** A row not taken. `line` counts from 1; `column` is null where the row as a whole is meant. */
   rejected(line: number, column: string | null, reason: string, text: string): void;
-  /** Bytes of the file read so far. */
+  /** Bytes of the file read so far, unpacked. */
   progress?(bytes: number): void;
   /**
    * Everything given so far is void and comes again from the beginning. Called when rows turn out not to be in order
@@ -109,7 +110,7 @@ async function once(
     for (const layer of feed.interpreter?.take() ?? []) await sink.layer(layer);
   };
   let head: Uint8Array | null = null;
-  for await (const chunk of source) {
+  for await (const chunk of unpacked(source)) {
     bytes += chunk.length;
     if (reader) reader.push(chunk);
     else {

@@ -26,6 +26,8 @@ export interface ClockEvidence {
   /** Whether `light` is generation, whose hours lie evenly about noon. */
   generation: boolean;
   step: number;
+  /** What the changes say, where rows of whole days were counted instead of looked at. */
+  told?: { yes: number; no: number; once: number };
 }
 
 export interface Place {
@@ -100,6 +102,34 @@ function followed(
   return { yes, no, once };
 }
 
+/**
+ * What rows of whole days say of the changes: as many values as the day has hours, or as every day.
+ * @param days midnights of the rows, local
+ * @param filled per row the number of values, gaps at its end left off
+ * @param gaps whether the row has no values where the clock leaves an hour out
+ */
+export function followedAcross(
+  timeZone: string,
+  days: readonly number[],
+  filled: readonly number[],
+  gaps: readonly boolean[],
+  perDay: number,
+): { yes: number; no: number; once: number } {
+  const zone = zoneOf(timeZone);
+  const told = { yes: 0, no: 0, once: 0 };
+  days.forEach((day, i) => {
+    const { hours } = zone.dayBounds(new Date(day).toISOString().slice(0, 10));
+    if (hours === 24) return;
+    const passed = Math.round((hours * perDay) / 24);
+    if (hours < 24) {
+      if (filled[i] === passed || gaps[i]) told.yes++;
+      else if (filled[i] > passed) told.no++;
+    } else if (filled[i] === passed) told.yes++;
+    else if (filled[i] === perDay) told.once++;
+  });
+  return told;
+}
+
 /** How a clock fits the sun: whether the light came by day, and how far its middle lies from noon, in minutes. */
 function inLight(
   zone: Zone,
@@ -171,7 +201,7 @@ export function clockOf(evidence: ClockEvidence, place: Place): ClockVerdict {
   const standard = Math.min(...year);
   const changes = Math.max(...year) !== standard;
   const fixed = offsetName(standard);
-  const { yes, no, once } = followed(zone, evidence, from, to);
+  const { yes, no, once } = evidence.told ?? followed(zone, evidence, from, to);
   const candidates: ClockGuess[] = [own];
   const differs = [...offsets].some((offset) => offset !== standard);
   if (changes && (differs || once > 0))

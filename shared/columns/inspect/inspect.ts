@@ -13,7 +13,7 @@ import { type Answer, choiceValue } from '../answer.ts';
 import { NumberReader } from '../number.ts';
 import { stampReader } from '../stamp.ts';
 import { type Proposal, propose } from './channels.ts';
-import { clockOf, type ClockVerdict } from './clock-evidence.ts';
+import { clockOf, type ClockVerdict, followedAcross } from './clock-evidence.ts';
 import { previewOf } from './preview.ts';
 import { isBlank, recordsOf, type SampleRow, type TextSample } from './sample.ts';
 import { isCounter, type Series, seriesOf } from './series.ts';
@@ -169,6 +169,34 @@ function seriesIn(found: Found, refs: ColumnRef[]): Series[] {
     const title = nameAt === null ? '' : name;
     return seriesOf(ref, title || 'values across the day', number, '', dayTimes, dayCells, reader);
   });
+}
+
+/** What rows of whole days say of the zone's clock changes. */
+function changesAcross(
+  { rows, time, shape, decimal, thousands }: Found,
+  timeZone: string,
+): ReturnType<typeof followedAcross> {
+  if (shape.kind !== 'acrossDay') return { yes: 0, no: 0, once: 0 };
+  const { first, perDay } = shape;
+  const reader = new NumberReader(decimal, thousands);
+  const used = rows
+    .map((row, i) => ({ day: time.times[i], cells: row.cells.slice(first) }))
+    .filter(({ day }) => day === day);
+  const filled = used.map(({ cells }) => cells.findLastIndex((cell) => reader.read(cell) === 'number') + 1);
+  const zone = zoneOf(timeZone);
+  const gaps = used.map(({ day, cells }) => {
+    const out = Array.from({ length: perDay }, (_, k) => k).filter(
+      (k) => zone.localToUtc(day + (k * DAY_MS) / perDay).length === 0,
+    );
+    return out.length > 0 && out.every((k) => reader.isMissing(cells[k]));
+  });
+  return followedAcross(
+    timeZone,
+    used.map(({ day }) => day),
+    filled,
+    gaps,
+    perDay,
+  );
 }
 
 /** Whether rows come only when something changes: steps of all lengths, and no value twice in a row. */
@@ -379,6 +407,7 @@ export function inspectSample(sample: TextSample, ctx: InspectContext, given?: C
         light: series ? series.values.map((values) => (counted ? risesOf(values) : values)) : null,
         generation: lit?.options[0].column.channel === 'generation',
         step: across ? DAY_MS / shape.perDay : time.pace.step,
+        ...(across ? { told: changesAcross(found, ctx.timeZone) } : {}),
       },
       ctx,
     );

@@ -92,7 +92,11 @@ export function seriesOf(
       } else {
         const word = cell.trim().toLowerCase();
         if (texts.size < 20) texts.add(word);
-        if (states.has(word)) stateful++;
+        if (states.has(word)) {
+          stateful++;
+          // A number for each word, to see when it changes.
+          column[i] = [...texts].indexOf(word);
+        }
       }
     });
     return column;
@@ -106,6 +110,24 @@ export function seriesOf(
     distinct: distinct.size,
   };
   return { ref, label, number, words, times, values, facts };
+}
+
+/** The places of a group's readings in order of time: as they stand, turned round, or sorted if they are shuffled. */
+function inTime(times: Float64Array, values: Float64Array): number[] {
+  const order: number[] = [];
+  let ups = 0;
+  let downs = 0;
+  for (let i = 0; i < times.length; i++) {
+    if (times[i] !== times[i] || values[i] !== values[i]) continue;
+    const last = order.at(-1);
+    if (last !== undefined && times[i] > times[last]) ups++;
+    else if (last !== undefined && times[i] < times[last]) downs++;
+    order.push(i);
+  }
+  if (downs > 9 * ups) order.reverse();
+  // A clock that is put back runs backwards once, and the rows are in order all the same.
+  else if (ups <= 9 * downs) order.sort((a, b) => times[a] - times[b]);
+  return order;
 }
 
 /** Whether a fall looks like a counter that wraps or starts again. */
@@ -141,8 +163,7 @@ function stepFacts(
   let to = -Infinity;
   let carried = NaN;
   for (let g = 0; g < values.length; g++) {
-    const order = [...times[g].keys()].filter((i) => times[g][i] === times[g][i] && values[g][i] === values[g][i]);
-    order.sort((a, b) => times[g][a] - times[g][b]);
+    const order = inTime(times[g], values[g]);
     let before = NaN;
     let levelFrom = NaN;
     for (const i of order) {

@@ -70,19 +70,20 @@ export function shapeOf(
     const words = headingWords(header?.[c] ?? '');
     return new Set(used.map(({ cells }) => cells[c])).size > 2 || !words.has('other');
   });
+  const wordsOf = (c: number): string[] => [...new Set(used.map(({ cells }) => (cells[c] ?? '').trim().toLowerCase()))];
+  const generic = (c: number): boolean =>
+    /^(?:val|wert|mess|amount|reading|lectura|valor|waarde)/i.test(header?.[c]?.trim() ?? '');
+  const value = values.find(generic) ?? values[0];
+  if (value === undefined) return { kind: 'wide' };
   const name = names.find((c) => {
-    const words = new Set(used.map(({ cells }) => (cells[c] ?? '').trim().toLowerCase()));
-    const units = [...words].every((word) => isUnit(word));
-    return words.size >= 2 && !units && repeats(used, time, words.size);
+    const words = wordsOf(c);
+    if (words.every((word) => isUnit(word))) return false;
+    // One name alone heads a column that has no name of its own.
+    return words.length >= 2 ? repeats(used, time, words.length) : generic(value) && values.length === 1;
   });
-  if (name !== undefined && values.length >= 1) {
-    const value =
-      values.find((c) => /val|wert|mess|amount|reading|lectura|valor|waarde/i.test(header?.[c] ?? '')) ?? values[0];
-    const states = new Set(used.map(({ cells }) => (cells[value] ?? '').trim()));
-    if (values.length === 1 || states.size > 2) {
-      const unit = names.find((c) => c !== name && used.every(({ cells }) => isUnit(cells[c] ?? ''))) ?? null;
-      return { kind: 'long', name, value, unit };
-    }
+  if (name !== undefined) {
+    const unit = names.find((c) => c !== name && wordsOf(c).every((word) => isUnit(word))) ?? null;
+    return { kind: 'long', name, value, unit };
   }
   return { kind: 'wide' };
 }

@@ -47,9 +47,12 @@ function likeness(lines: readonly string[], delimiter: string): number {
 /** How the lines are cut; null if they are no table. */
 export function findDelimiter(sample: TextSample): string | null {
   const lines = [...sample.head.slice(0, 300), ...sample.further.slice(0, 5).flat().slice(0, 50)];
-  const [best] = DELIMITERS.map((delimiter) => ({ delimiter, like: likeness(lines, delimiter) })).sort(
-    (a, b) => b.like - a.like,
-  );
+  const [best] = DELIMITERS.map((delimiter) => ({ delimiter, like: likeness(lines, delimiter) }))
+    // Blanks stand inside times and names too: they part columns only where nothing else does.
+    .map((way, _, all) =>
+      way.delimiter === '  ' && all.some(({ like }) => like >= 0.5 && like !== way.like) ? { ...way, like: 0 } : way,
+    )
+    .sort((a, b) => b.like - a.like);
   return best.like >= 0.35 ? best.delimiter : null;
 }
 

@@ -34,7 +34,8 @@ interface Candidate extends TimeChoice {
 }
 
 /** A reading wanders much less than another if the days that follow each other by it are days in a row. */
-const clearlyBetter = (a: Pace, b: Pace): boolean => b.wander > a.wander * 1.5 + 0.5 || b.step > a.step * 20;
+const clearlyBetter = (a: Pace, b: Pace): boolean =>
+  b.wander > a.wander * 1.5 + 0.5 || b.step > a.step * 20 || (a.filled > b.filled * 3 && a.filled > 0.1);
 
 /** Takes the readings of one column apart: the best, and those that read as well. */
 function bestOf(

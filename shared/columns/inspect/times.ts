@@ -38,7 +38,11 @@ function timeTokens(
 export function formatsOf(cell: string): { format: string; part: TimeReading['part']; likeNumbers: boolean }[] {
   const text = cell.trim();
   if (/^\d{4}-\d{2}-\d{2}$/.test(text)) return [{ format: 'iso', part: 'date', likeNumbers: false }];
-  if (/^\d{4}-\d{2}-\d{2}(?:T| +)\d{1,2}:\d{2}/i.test(text))
+  if (
+    /^\d{4}-\d{2}-\d{2}(?:T| +)\d{1,2}:\d{2}(?::\d{2}(?:[.,]\d+)?)?\s*(?:Z|UTC|GMT|[+−-]\d{2}(?::?\d{2})?)?$/i.test(
+      text,
+    )
+  )
     return [{ format: 'iso', part: 'dateTime', likeNumbers: false }];
   if (/^\d{8}T?\s?\d{4,6}(?:Z|[+-]\d{2}:?\d{2})?$/i.test(text) && /[T\sZ+-]/i.test(text))
     return [{ format: 'iso', part: 'dateTime', likeNumbers: false }];
@@ -112,11 +116,18 @@ export function timeReadings(cells: readonly string[], decimal: string): TimeRea
       read++;
       if (reader.zoned) zoned++;
     });
-    const share = filled.length === 0 ? 0 : read / filled.length;
+    // What stands above the first time is preamble and heading.
+    const above = times.findIndex((time) => time === time);
+    const from = above > MAX_ABOVE ? 0 : above;
+    const below = from < 0 ? 0 : cells.slice(from).filter((cell) => cell.trim() !== '').length;
+    const share = read === 0 || read < filled.length * 0.3 ? 0 : read / below;
     readings.push({ format, times, share, zoned: zoned > 0 && zoned === read, part, likeNumbers });
   }
   return readings.sort((a, b) => b.share - a.share);
 }
+
+/** Preamble and heading are no longer than this among rows of the usual width. */
+const MAX_ABOVE = 6;
 
 /** How times follow each other. */
 export interface Pace {
@@ -126,6 +137,8 @@ export interface Pace {
   regular: number;
   /** The sum of all steps' lengths over that of the whole span: 1 for a file in order. */
   wander: number;
+  /** The share of the span that the usual step would fill with as many rows. */
+  filled: number;
   /** 1 oldest first, -1 newest first, 0 neither. */
   way: 1 | -1 | 0;
   distinct: number;
@@ -167,6 +180,7 @@ export function paceOf(groups: readonly Float64Array[]): Pace {
     step,
     regular: total === 0 ? 0 : count / total,
     wander: high > low ? length / (high - low) : 1,
+    filled: high > low ? Math.min(1, (step * (distinct.size - 1)) / (high - low)) : 1,
     way,
     distinct: distinct.size,
   };

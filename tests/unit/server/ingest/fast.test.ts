@@ -156,7 +156,10 @@ async function same({ text, plan }: Case, size: number): Promise<number> {
   return fast.result.fastRows;
 }
 
-describe('the fast path', () => {
+/** `FUZZ` times as many cases, for long runs. */
+const MORE = Number(process.env.FUZZ ?? 1);
+
+describe('the fast path', { timeout: 120_000 * MORE }, () => {
   it('gives what the general reader gives, on generated tables', async () => {
     await fc.assert(
       fc.asyncProperty(
@@ -164,7 +167,7 @@ describe('the fast path', () => {
         fc.integer({ min: 1, max: 3000 }),
         async (table, size) => void (await same(table, size)),
       ),
-      { numRuns: 400 },
+      { numRuns: 150 * MORE },
     );
   });
 
@@ -175,7 +178,7 @@ describe('the fast path', () => {
         fc.integer({ min: 1, max: 3000 }),
         async (table, size) => void (await same(table, size)),
       ),
-      { numRuns: 800 },
+      { numRuns: 300 * MORE },
     );
   });
 
