@@ -10,6 +10,16 @@ export function mondayOf(date: string): string {
   return addDays(date, 1 - weekdayOf(date));
 }
 
+/**
+ * The Monday of the week to open with: the last one that was logged up to its Thursday, so that a Monday morning shows
+ * the week that ended and not one of a few hours. Where there is no earlier week, the one there is.
+ */
+export function weekToOpen(firstDay: string, lastDay: string): string {
+  const monday = mondayOf(lastDay);
+  const before = addDays(monday, -7);
+  return lastDay < addDays(monday, 3) && firstDay <= addDays(before, 3) ? before : monday;
+}
+
 /** The ISO 8601 week of a civil date, `YYYY-Www`. Its year is that of the week’s Thursday. */
 export function isoWeek(date: string): string {
   const thursday = addDays(mondayOf(date), 3);

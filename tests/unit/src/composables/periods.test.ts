@@ -6,6 +6,7 @@ import {
   mondayOfWeek,
   monthSpan,
   weekdayOf,
+  weekToOpen,
   yearSpan,
 } from '../../../../src/composables/periods.ts';
 
@@ -36,6 +37,17 @@ describe('ISO weeks', () => {
   it.each(['2026-W54', '2026-W00', '2025-W53', 'next', '2026-W1'])('%s is no week', (week) =>
     expect(mondayOfWeek(week)).toBeNull(),
   );
+});
+
+describe('the week to open with', () => {
+  // 30 November 2026 is a Monday.
+  it.each([
+    ['a full week before and only Monday since', '2026-01-01', '2026-11-30', '2026-11-23'],
+    ['logged up to Wednesday', '2026-01-01', '2026-12-02', '2026-11-23'],
+    ['logged up to Thursday', '2026-01-01', '2026-12-03', '2026-11-30'],
+    ['nothing before this week', '2026-11-30', '2026-12-01', '2026-11-30'],
+    ['too little of the week before', '2026-11-28', '2026-12-01', '2026-11-30'],
+  ])('%s', (_, first, last, monday) => expect(weekToOpen(first, last)).toBe(monday));
 });
 
 describe('months and years', () => {
