@@ -94,7 +94,8 @@ export async function addProperty(db: Database, person: Person, body: NewPropert
       readyTime: body.ready?.time ?? null,
       readyTemperatureC: body.ready?.temperatureC ?? null,
       teamId: team.id,
-      demo: person.demo,
+      // The demo's own homes say so in their name; a home that a visitor adds to try their own log is not invented.
+      demo: person.demo && body.name.endsWith('(demo)'),
       createdBy: person.id,
     });
     await insertFirstGrant(tx, {
