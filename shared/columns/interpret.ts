@@ -53,6 +53,10 @@ export class Interpreter {
   private readonly labels: string[];
   private readonly heading: readonly string[] | null;
   private readonly daysAcross = new Map<string, string>();
+  /** Rows of days may stand in sections, whose title rows bear the name where the days' rows bear a value. */
+  private readonly sections: boolean;
+  private section: number | undefined;
+  private title: readonly string[] | null = null;
   /** The cells that a row has. */
   readonly width: number;
   /** The cells that a whole row has at the least: a day of 23 hours is shorter. */
@@ -88,6 +92,7 @@ export class Interpreter {
     this.heading = header;
     this.width = this.layout.width ?? firstRow.length;
     const { firstAt, perDay } = this.layout;
+    this.sections = firstAt >= 0 && this.layout.nameAt >= firstAt;
     this.leastWidth = firstAt < 0 ? this.width : firstAt + Math.ceil((perDay * 23) / 24);
   }
 
@@ -95,7 +100,7 @@ export class Interpreter {
   row(cells: string[], line: number, text: string, torn = false): void {
     if (cells.every((cell) => cell === '' || cell.trim() === '')) return;
     this.counts.read++;
-    if (cells.length !== this.width) {
+    if (cells.length !== this.width && !(this.sections && this.heading === null)) {
       if (cells.length > this.width && cells.slice(this.width).some((cell) => cell.trim() !== ''))
         return this.reject(line, null, `The row has more cells than the ${this.width} of the heading.`, text);
       if (torn && cells.length < this.leastWidth)
@@ -103,6 +108,10 @@ export class Interpreter {
     }
     if (this.isHeading(cells)) return this.reject(line, null, 'The heading stands here again.', text);
     if (!this.stamps.read(this.timeText(cells))) {
+      if (this.sections && this.isTitle(cells)) {
+        this.counts.read--;
+        return;
+      }
       const form = TIME_FORMS[this.plan.time.format] ?? this.plan.time.format;
       const column = columnName(this.plan.time.columns[0], this.layout.header);
       return this.reject(line, column, `The time cannot be read as ${form}.`, text);
@@ -254,17 +263,34 @@ export class Interpreter {
     return `This local time does not exist: clocks in ${this.zone.name} went forward over it.`;
   }
 
+  /** Takes a row without a day as a title of the rows below it; false if its name is none of the plan's. */
+  private isTitle(cells: readonly string[]): boolean {
+    const column = this.names.get(cells[this.layout.nameAt]?.trim().toLowerCase() ?? '');
+    if (column !== undefined) {
+      this.section = column;
+      this.title = cells;
+      return true;
+    }
+    // A title like the last one, of a name that is none of the plan's: what follows belongs to no column of it.
+    if (this.title && (cells[0] === this.title[0] || cells.length === this.title.length)) this.section = undefined;
+    return false;
+  }
+
   /** A row that holds a whole day. */
   private across(cells: readonly string[], line: number, text: string): void {
     const { firstAt, nameAt, perDay } = this.layout;
-    const column = nameAt < 0 ? 0 : this.names.get(cells[nameAt]?.trim().toLowerCase() ?? '');
+    let column: number | undefined = 0;
+    if (this.sections) column = this.section;
+    else if (nameAt >= 0) column = this.names.get(cells[nameAt]?.trim().toLowerCase() ?? '');
     if (column === undefined) {
       this.leave(line);
       return;
     }
     const { ms, zoned } = this.stamps;
     if (!zoned && ms % DAY_MS !== 0) return this.reject(line, null, 'The row names a time of day, not a day.', text);
-    const values = cells.slice(firstAt);
+    // Without a heading nothing tells further values from what else a row may end with.
+    const most = this.heading === null ? perDay : Math.ceil((perDay * 25) / 24);
+    const values = cells.slice(firstAt, firstAt + most);
     const key = `${ms} ${column}`;
     const said = values.join('\u0000');
     if (this.daysAcross.get(key) === said) {
@@ -304,7 +330,7 @@ export class Interpreter {
     if (offset === offset) return (i) => (i < perDay ? ms - offset + i * step : NaN);
     const { start, hours } = this.zone.dayBounds(new Date(ms).toISOString().slice(0, 10));
     const passed = Math.round((hours * perDay) / 24);
-    const filled = values.findLastIndex((cell) => !this.numbers.isMissing(cell)) + 1;
+    const filled = values.findLastIndex((cell) => this.numbers.read(cell) === 'number') + 1;
     if (hours === 24 || (hours < 24 && filled <= passed) || (hours > 24 && filled > perDay))
       return (i) => (i < passed ? start + i * step : NaN);
     return (i) => {

@@ -3,6 +3,8 @@ import path from 'node:path';
 import { describe, expect, it } from 'vitest';
 import type { ColumnPlan } from '../../shared/api/plan.ts';
 import { zoneOf } from '../../shared/time/zone.ts';
+import { applyAnswer } from '../../shared/columns/answer.ts';
+import { inspectBytes } from '../../server/ingest/inspect.ts';
 import { read } from '../unit/server/ingest/reading.ts';
 
 /**
@@ -90,5 +92,77 @@ describe.skipIf(!existsSync(data))('open data', () => {
     }
     expect(days).toBe(187);
     expect(total).toBeCloseTo(1694.82, 6);
+  });
+
+  /** The clock of the Australian files is UTC+10 all year; Queensland keeps that time. */
+  const brisbane = { timeZone: 'Australia/Brisbane', latitude: -27.47, longitude: 153.03, country: 'Australia' };
+  const london = { timeZone: 'Europe/London', latitude: null, longitude: null, country: null };
+  const sums = (readings: [number, number][][]): number[] =>
+    readings.map((column) => column.reduce((sum, [, value]) => sum + value, 0));
+
+  it.each(['wide-iso.csv', 'semicolon.csv'])('au-solar-5min/%s is understood by itself', async (name) => {
+    const { plan, questions } = await inspectBytes(file(`au-solar-5min/${name}`), name, brisbane);
+    expect(questions).toEqual([]);
+    if (!plan) throw new Error('no plan');
+    expect(plan.time.stamp).toBe('start');
+    expect(plan.columns.map(({ channel, kind, unit }) => [channel, kind, unit])).toEqual([
+      ['export', 'energy', 'kWh'],
+      ['import', 'energy', 'kWh'],
+    ]);
+    const own = await read(file(`au-solar-5min/${name}`), plan);
+    expect(own.readings).toEqual((await read(file(`au-solar-5min/${name}`), PLANS[name])).readings);
+  });
+
+  it('au-solar-5min/registers.csv is understood by itself, its counter’s wrap too', async () => {
+    const { plan, questions } = await inspectBytes(file('au-solar-5min/registers.csv'), 'registers.csv', brisbane);
+    expect(questions).toEqual([]);
+    if (!plan) throw new Error('no plan');
+    expect(plan.columns.map(({ channel, kind, unit }) => [channel, kind, unit])).toEqual([
+      ['export', 'register', 'kWh'],
+      ['import', 'register', 'kWh'],
+    ]);
+    const { readings } = await read(file('au-solar-5min/registers.csv'), plan);
+    // Naive: the sum of rises, the one fall taken as a wrap at the next power of ten.
+    const risen = readings.map((column) => {
+      let sum = 0;
+      let wraps = 0;
+      for (let i = 1; i < column.length; i++) {
+        const step = column[i][1] - column[i - 1][1];
+        if (step < 0) wraps++;
+        sum += step < 0 ? step + 10 ** Math.ceil(Math.log10(column[i - 1][1])) : step;
+      }
+      return { sum, wraps };
+    });
+    expect(risen[0].sum).toBeCloseTo(589.172, 3);
+    expect(risen[1].sum).toBeCloseTo(270.738, 3);
+    expect(risen.map(({ wraps }) => wraps)).toEqual([1, 0]);
+  });
+
+  it('au-solar-5min/original.csv asks what its two sections are, and comes out once told', async () => {
+    const bytes = file('au-solar-5min/original.csv');
+    const found = await inspectBytes(bytes, 'original.csv', brisbane);
+    expect(found.questions.map(({ about }) => about.split(':')[0])).toEqual(['"B1"', '"E1"']);
+    // B1 is export and E1 import (data/README.md).
+    const answers = ['Export in kWh.', 'Import in kWh.'];
+    const plan = found.questions.reduce((soFar, question, i) => {
+      const choice = question.choices.find(({ reason }) => reason === answers[i]);
+      return applyAnswer(soFar, question.id, choice?.value ?? '');
+    }, found.plan as ColumnPlan);
+    const { readings, result } = await read(bytes, plan);
+    expect(plan.columns.map(({ channel }) => channel)).toEqual(['export', 'import']);
+    expect(sums(readings)[0]).toBeCloseTo(589.172, 3);
+    expect(sums(readings)[1]).toBeCloseTo(270.738, 3);
+    expect(readings).toEqual((await read(file('au-solar-5min/wide-iso.csv'), PLANS['wide-iso.csv'])).readings);
+    expect(result.rows).toMatchObject({ accepted: 62, unchanged: 0 });
+    // Only one of them told: nothing of the other may be taken for it.
+    const half = await read(bytes, { ...plan, columns: plan.columns.slice(0, 1) });
+    expect(sums(half.readings)[0]).toBeCloseTo(589.172, 3);
+  });
+
+  it('uk-gas-15min is understood by itself: the even clock of the two, and a counter of gas', async () => {
+    const { plan, questions } = await inspectBytes(file('uk-gas-15min/original.csv'), 'original.csv', london);
+    expect(questions).toEqual([]);
+    expect(plan?.time).toMatchObject({ columns: ['device_timestamp'], format: 'epochSeconds' });
+    expect(plan?.columns).toEqual([{ column: 'energy', channel: 'gas', kind: 'register', unit: 'kWh', sign: 1 }]);
   });
 });

@@ -17,7 +17,7 @@ import { clockOf, type ClockVerdict, followedAcross } from './clock-evidence.ts'
 import { previewOf } from './preview.ts';
 import { isBlank, recordsOf, type SampleRow, type TextSample } from './sample.ts';
 import { isCounter, type Series, seriesOf } from './series.ts';
-import { type Shape, shapeOf } from './shape.ts';
+import { sectionsOf, type Shape, shapeOf } from './shape.ts';
 import { columnRefs, findDecimals, findDelimiter, findHeading, type Heading } from './table.ts';
 import { chooseTime, inGroups, timeColumns, type TimeChoice } from './time-columns.ts';
 import { headingWords, isUnit } from './words.ts';
@@ -99,6 +99,19 @@ function findTable(sample: TextSample): Found | Inspection {
   lengths[0] -= from;
   const numbers = new NumberReader(decimals.decimal, decimals.thousands);
   const cut = { ...time, times: keep(time.times) };
+  let shape = shapeOf(rows, width, cut, heading.header, numbers);
+  if (shape.kind === 'acrossDay' && shape.name === null && heading.header === null) {
+    const sections = sectionsOf(
+      headRows.filter((row) => !isBlank(row)),
+      rows.filter((_, i) => cut.times[i] === cut.times[i]),
+      shape.first,
+    );
+    if (sections) {
+      // Title rows are read, so none may be skipped.
+      shape = { ...shape, name: sections.name, sections };
+      heading.skipRows = 0;
+    }
+  }
   return {
     delimiter,
     decimal: decimals.decimal,
@@ -109,7 +122,7 @@ function findTable(sample: TextSample): Found | Inspection {
     rows,
     lengths,
     time: cut,
-    shape: shapeOf(rows, width, cut, heading.header, numbers),
+    shape,
   };
 }
 
@@ -145,8 +158,12 @@ function seriesIn(found: Found, refs: ColumnRef[]): Series[] {
           ],
     );
   }
-  const nameAt = shape.kind === 'long' ? shape.name : shape.name;
-  const nameOf = (row: SampleRow): string => (nameAt === null ? '' : (row.cells[nameAt] ?? '').trim());
+  const nameAt = shape.name;
+  const sections = shape.kind === 'acrossDay' ? shape.sections : undefined;
+  const nameOf = (row: SampleRow): string => {
+    if (nameAt === null) return '';
+    return sections ? (sections.of.get(row) ?? '') : (row.cells[nameAt] ?? '').trim();
+  };
   const names = [...new Set(rows.map(nameOf))].filter((name) => nameAt === null || name !== '').slice(0, 60);
   return names.map((name) => {
     const own = (row: SampleRow): boolean => nameOf(row) === name;
@@ -167,7 +184,8 @@ function seriesIn(found: Found, refs: ColumnRef[]): Series[] {
       dayCells.push(cells);
     });
     const title = nameAt === null ? '' : name;
-    return seriesOf(ref, title || 'values across the day', number, '', dayTimes, dayCells, reader);
+    const unit = sections?.units.get(name) ?? '';
+    return seriesOf(ref, title || 'values across the day', number, unit, dayTimes, dayCells, reader);
   });
 }
 

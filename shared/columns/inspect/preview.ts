@@ -8,13 +8,15 @@ import { isBlank, recordsOf, type SampleRow, type TextSample } from './sample.ts
 
 const SHOWN_ROWS = 12;
 
-/** One row alone, as the plan reads it. */
+/** One row alone, as the plan reads it; below a row that may be the title of its section. */
 function readRow(
   plan: ColumnPlan,
   header: readonly string[] | null,
   row: SampleRow,
+  title: SampleRow | null = null,
 ): { at: number | null; values: (number | null)[] } {
   const interpreter = new Interpreter(plan, header, row.cells, true, () => {});
+  if (title) interpreter.row(title.cells, title.line ?? 0, title.text);
   interpreter.row(row.cells, row.line ?? 0, row.text);
   interpreter.end();
   const [layer] = interpreter.take();
@@ -77,7 +79,12 @@ export function previewOf(
     const { collector } = interpreter;
     const after = dataRows(records, plan);
     const shown = after.slice(0, SHOWN_ROWS);
-    const read = shown.map((row) => ({ row, ...readRow(plan, header, row) }));
+    let title: SampleRow | null = null;
+    const read = shown.map((row) => {
+      const got = { row, ...readRow(plan, header, row, title) };
+      if (got.at === null) title = row;
+      return got;
+    });
     const further = sample.further.at(-1);
     const end = further ? lastInstant(plan, header, recordsOf(further, plan.delimiter, null)) : null;
     const ends = [collector.from, collector.to, ...(end === null ? [] : [end])].filter((at) => Number.isFinite(at));

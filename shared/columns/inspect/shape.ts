@@ -2,12 +2,19 @@ import { PER_DAY } from '../layout.ts';
 import type { NumberReader } from '../number.ts';
 import type { SampleRow } from './sample.ts';
 import type { TimeChoice } from './time-columns.ts';
-import { headingWords, isUnit } from './words.ts';
+import { headingWords, isUnit, unitOf } from './words.ts';
 
 export type Shape =
   | { kind: 'wide' }
   | { kind: 'long'; name: number; value: number; unit: number | null }
-  | { kind: 'acrossDay'; first: number; perDay: number; name: number | null };
+  | { kind: 'acrossDay'; first: number; perDay: number; name: number | null; sections?: Sections };
+
+/** Rows of days that stand below title rows. */
+export interface Sections {
+  /** The name of each row's section; empty where it is not known. */
+  of: Map<SampleRow, string>;
+  units: Map<string, string>;
+}
 
 function share(rows: readonly SampleRow[], c: number, test: (cell: string) => boolean): number {
   let filled = 0;
@@ -86,6 +93,35 @@ export function shapeOf(
     return { kind: 'long', name, value, unit };
   }
   return { kind: 'wide' };
+}
+
+/**
+ * Finds title rows among rows of days: rows without a day, right above rows with one, that bear a name each.
+ * @param all the rows from the beginning of the file
+ * @param days the rows of days
+ */
+export function sectionsOf(
+  all: readonly SampleRow[],
+  days: readonly SampleRow[],
+  first: number,
+): (Sections & { name: number }) | null {
+  const isDay = new Set(days);
+  const titles = all.filter((row, i) => !isDay.has(row) && i + 1 < all.length && isDay.has(all[i + 1]));
+  if (titles.length === 0) return null;
+  const width = Math.max(...titles.map(({ cells }) => cells.length));
+  for (let name = first; name < width; name++) {
+    const names = titles.map(({ cells }) => (cells[name] ?? '').trim());
+    if (new Set(names).size < names.length || !names.every((text) => /\p{L}/u.test(text) && !isUnit(text))) continue;
+    const units = new Map(titles.map(({ cells }, i) => [names[i], cells.find((cell) => unitOf(cell) !== null) ?? '']));
+    const of = new Map<SampleRow, string>();
+    let current = '';
+    for (const row of all) {
+      if (isDay.has(row)) of.set(row, current);
+      else current = titles.includes(row) ? names[titles.indexOf(row)] : '';
+    }
+    return { name, of, units };
+  }
+  return null;
 }
 
 /** Whether times come several times over, as often as there are names. */

@@ -106,7 +106,9 @@ export function chooseTime(
     const { best, pace, rivals } = found;
     if (best.likeNumbers) {
       // Numbers are taken for times only if they run as times do, or are called so.
-      const runs = pace.way !== 0 && pace.wander < 1.01 && pace.distinct > 2;
+      // Dates of eight digits, day after day, are no accident, also where several channels repeat them.
+      const daily = best.format.startsWith('yyyyMMdd') && pace.regular > 0.5 && best.share > 0.95;
+      const runs = (pace.way !== 0 && pace.wander < 1.01 && pace.distinct > 2) || daily;
       const named = headings.length === 0 ? c === 0 : said(c);
       if (!(runs && (named || best.format.startsWith('epoch') || best.format.startsWith('yyyyMMdd')))) return;
       if (best.format === 'excelSerial' && !named) return;
