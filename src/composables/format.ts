@@ -25,7 +25,8 @@ function numberFormat(options: Intl.NumberFormatOptions): Intl.NumberFormat {
 export function digitsFor(value: number): number {
   const size = Math.abs(value);
   if (size >= 99.95) return 0;
-  return size >= 9.995 || size === 0 ? 1 : 2;
+  if (size === 0) return 0;
+  return size >= 9.995 ? 1 : 2;
 }
 
 /** A number in the reader’s way of writing; `digits` after the mark, else as many as its size deserves. */

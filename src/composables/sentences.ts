@@ -5,8 +5,10 @@ import { counted, percent, said } from './format.ts';
 export interface Period {
   /** "this week’s", "the week’s", "November’s" */
   possessive: string;
-  /** "this week", "in the week", "in November 2026" */
+  /** "this week", "in week 26", "in November 2026" */
   when: string;
+  /** It is still going on. */
+  running?: boolean;
 }
 
 /** Whether anything at all was logged on a day. */
@@ -19,27 +21,28 @@ const known = (days: readonly Day[], figure: 'divertedKwh' | 'solarFraction'): n
 
 /**
  * What a stretch of days shows, in one sentence. It claims a share only where the totals know it, and says how many
- * days it rests on where that is not all of them.
+ * days it rests on where that is not all of them. A stretch that is still going on is given up to its last logged day.
  */
 export function sunSentence(totals: Totals, days: readonly Day[], period: Period): string {
   const logged = days.filter(hasLogs).length;
-  if (logged === 0) return `No logs ${period.when}`;
+  const when = period.running ? `${period.when} so far` : period.when;
+  if (logged === 0) return `No logs ${when}`;
   const { solarFraction, divertedKwh, exportKwh } = totals;
   if (solarFraction !== null) {
     const sure = known(days, 'solarFraction');
-    if (sure === days.length) return `The sun made ${percent(solarFraction)} of ${period.possessive} hot water`;
-    return `The sun made ${percent(solarFraction)} of ${period.possessive} hot water, as far as ${sure} of ${counted(days.length, 'day')} tell`;
+    const claim = `The sun made ${percent(solarFraction)} of ${period.possessive} hot water${period.running ? ' so far' : ''}`;
+    return sure === days.length ? claim : `${claim}, as far as ${sure} of ${counted(days.length, 'day')} tell`;
   }
   if (divertedKwh !== null) {
-    if (divertedKwh < 0.005) return `No sun went into the cylinder ${period.when}`;
-    const amount = said('divertedKwh', divertedKwh, null);
     const sure = known(days, 'divertedKwh');
-    if (sure === days.length && logged === days.length) return `The sun put ${amount} into the cylinder ${period.when}`;
-    return `The sun put at least ${amount} into the cylinder ${period.when}, with logs for ${sure} of ${counted(days.length, 'day')}`;
+    const all = sure === days.length && logged === days.length;
+    const rest = all ? '' : `, with logs for ${sure} of ${counted(days.length, 'day')}`;
+    if (divertedKwh < 0.005) return `No sun went into the cylinder ${when}${rest}`;
+    return `The sun put ${all ? '' : 'at least '}${said('divertedKwh', divertedKwh, null)} into the cylinder ${when}${rest}`;
   }
   if (exportKwh !== null)
-    return `${said('exportKwh', exportKwh, null)} went to the grid ${period.when}; what went into the cylinder is not logged`;
-  return `The logs ${period.when} do not say what the sun put into the cylinder`;
+    return `${said('exportKwh', exportKwh, null)} went to the grid ${when}; what went into the cylinder is not logged`;
+  return `The logs ${when} do not say what the sun put into the cylinder`;
 }
 
 /** The same for one day. */
@@ -70,8 +73,10 @@ export function readySentence(evenings: Totals['readyEvenings'], days: number, t
   const { met, known: sure } = evenings;
   if (sure === 0) return `Not known whether the water was ready at ${time}`;
   const of = sure === days ? '' : ` known, of ${days}`;
-  if (met === sure)
+  if (met === sure) {
+    if (sure === 1) return `Ready at ${time} on the one evening known`;
     return `Ready at ${time} on ${sure === days ? 'every evening' : `all ${counted(sure, 'evening')}${of}`}`;
+  }
   if (met === 0) return `Not ready at ${time} on any of ${counted(sure, 'evening')}${of}`;
   return `Ready at ${time} on ${met} of ${counted(sure, 'evening')}${of}`;
 }

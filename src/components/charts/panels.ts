@@ -74,16 +74,29 @@ const PLANS: readonly Plan[] = [
   { title: 'Relay on', unit: '', small: true, channels: { relay: style('fuel', 'solid', true, true) } },
 ];
 
+/** What was read of a day: for each channel its points, in the unit that they came in. */
+export type Read = Partial<Record<Channel, { points: Points; unit: string }>>;
+
+/** A unit as it is shown; a fuel meter may count volume or energy. */
+export function unitShown(unit: string): string {
+  return { C: '°C', 'm3/h': 'm³/h', state: '' }[unit] ?? unit;
+}
+
+const unitOf = (plan: Plan, read: Read, channel: Channel): string =>
+  plan.small ? plan.unit : unitShown(read[channel]?.unit ?? plan.unit);
+
 /** The channels that a day’s panels can show. */
 export const DRAWN: readonly Channel[] = PLANS.flatMap((plan) => Object.keys(plan.channels) as Channel[]);
 
 /** Panels for what was read; a panel without any trace is left out. */
-export function panelsOf(read: Partial<Record<Channel, Points>>): Panel[] {
+export function panelsOf(read: Read): Panel[] {
   return PLANS.flatMap((plan) => {
     const traces = (Object.entries(plan.channels) as [Channel, Style][]).flatMap(([channel, drawn]) => {
-      const points = read[channel];
+      const points = read[channel]?.points;
       return points?.length ? [{ channel, name: CHANNEL_LABELS[channel], points, ...drawn }] : [];
     });
-    return traces.length > 0 ? [{ title: plan.title, unit: plan.unit, small: plan.small, traces }] : [];
+    return traces.length > 0
+      ? [{ title: plan.title, unit: unitOf(plan, read, traces[0].channel), small: plan.small, traces }]
+      : [];
   });
 }

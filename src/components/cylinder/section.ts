@@ -103,10 +103,12 @@ export function gaugeParts(heat: HeatSources): { kind: 'sun' | 'fuel' | 'bought'
 
 /** A round top for the gauge’s scale, and its step, in kWh. */
 export function gaugeScale(total: number): { top: number; step: number } {
-  const rough = Math.max(total, 0.001) / 4;
+  // Less than a kilowatt-hour looks as little as it is.
+  const least = Math.max(total, 1);
+  const rough = least / 4;
   const power = 10 ** Math.floor(Math.log10(rough));
   const step = [1, 2, 5, 10].map((n) => n * power).find((n) => n >= rough)!;
-  return { step, top: Math.ceil(Math.max(total, step) / step - 1e-9) * step };
+  return { step, top: Math.ceil(least / step - 1e-9) * step };
 }
 
 /** The drawing in words, for those who do not see it. */

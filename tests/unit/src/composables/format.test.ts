@@ -18,7 +18,7 @@ const plain = (text: string): string => text.replace(/[\u00a0\u202f\u2009]/g, ' 
 
 describe('numbers', () => {
   it.each([
-    [0, '0.0'],
+    [0, '0'],
     [0.4234, '0.42'],
     [4.2149, '4.21'],
     [9.996, '10.0'],

@@ -36,6 +36,23 @@ describe('sunSentence', () => {
     const days = week(() => ({ divertedKwh: 0 }));
     expect(sunSentence(totals(days, { divertedKwh: 0 }), days, period)).toBe('No sun went into the cylinder this week');
   });
+  it('a measured nothing on some days claims nothing of the others', () => {
+    const days = week((i) => (i < 1 ? { divertedKwh: 0 } : { coverage: {} }));
+    expect(sunSentence(totals(days, { divertedKwh: 0 }), days, period)).toBe(
+      'No sun went into the cylinder this week, with logs for 1 of 7 days',
+    );
+  });
+  it('a week that is still going on is spoken of so far', () => {
+    const days = week(() => ({ divertedKwh: 1 })).slice(0, 2);
+    const so = { ...period, running: true };
+    expect(plain(sunSentence(totals(days, { divertedKwh: 2 }), days, so))).toBe(
+      'The sun put 2.00 kWh into the cylinder this week so far',
+    );
+    const known = days.map((one) => ({ ...one, solarFraction: 0.4 }));
+    expect(plain(sunSentence(totals(known, { solarFraction: 0.4 }), known, so))).toBe(
+      'The sun made 40 % of this week’s hot water so far',
+    );
+  });
   it('export alone claims nothing of the cylinder', () => {
     const days = week(() => ({ exportKwh: 2, coverage: { export: 1 } }));
     expect(sunSentence(totals(days, { exportKwh: 14 }), days, period)).toContain('is not logged');

@@ -87,7 +87,8 @@ describe('the drawing’s proportions and gauge', () => {
     expect(gaugeParts({ sun: 5, fuel: null, bought: 0 })).toEqual([{ kind: 'sun', kwh: 5 }]);
   });
   it.each([
-    [0, 0.00025],
+    [0, 0.25],
+    [0.11, 0.25],
     [1, 0.25],
     [46.9, 20],
     [100, 50],
