@@ -1,6 +1,7 @@
 import { createHash } from 'node:crypto';
 import { gzipSync } from 'node:zlib';
 import { describe, expect, it } from 'vitest';
+import type { Response, Test } from 'supertest';
 import type { Log } from '../../shared/api/log.ts';
 import type { ColumnPlan, Inspection } from '../../shared/api/plan.ts';
 import { useApp } from '../support/app.ts';
@@ -526,8 +527,8 @@ describe('DELETE /api/logs/:id', () => {
 });
 
 /** supertest gives bytes only if it is told how. */
-function binary(res: NodeJS.ReadableStream, done: (error: Error | null, body: Buffer) => void): void {
+const binary: Parameters<Test['parse']>[0] = (res: Response, done: (error: Error | null, body: Buffer) => void) => {
   const parts: Buffer[] = [];
-  res.on('data', (part: Buffer) => parts.push(part));
-  res.on('end', () => done(null, Buffer.concat(parts)));
-}
+  stream.on('data', (part: Buffer) => parts.push(part));
+  stream.on('end', () => done(null, Buffer.concat(parts)));
+};
