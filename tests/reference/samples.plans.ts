@@ -20,7 +20,7 @@ const iso = (column: string, zone: string, stamp: Time['stamp'] = 'instant'): Ti
 const of = (
   kind: PlanColumn['kind'],
   unit: PlanColumn['unit'],
-  column: string,
+  column: PlanColumn['column'],
   channel: PlanColumn['channel'],
 ): PlanColumn => ({ column, channel, kind, unit, sign: 1 });
 

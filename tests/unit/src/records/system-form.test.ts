@@ -14,6 +14,7 @@ import {
 
 const step = (min: number, max: number, by: number): fc.Arbitrary<number> =>
   fc.integer({ min: Math.round(min / by), max: Math.round(max / by) }).map((n) => Number((n * by).toFixed(6)));
+const CALORIFIC: Record<'gas' | 'lpg' | 'oil', [number, number]> = { gas: [20, 60], lpg: [5, 10], oil: [8, 13] };
 const maybe = <T>(arbitrary: fc.Arbitrary<T>): fc.Arbitrary<T | undefined> => fc.option(arbitrary, { nil: undefined });
 const clock = fc
   .integer({ min: 0, max: 1439 })
@@ -60,7 +61,7 @@ const record = fc
             fc.constantFrom(...BOILER_KINDS.filter((kind) => kind.fuels.includes(fuel)).map((kind) => kind.id)),
           ),
           efficiency: maybe(step(0.3, 1.1, 0.001)),
-          calorificValue: maybe(step(...({ gas: [20, 60], lpg: [5, 10], oil: [8, 13] } as const)[fuel], 0.01)),
+          calorificValue: maybe(step(...CALORIFIC[fuel], 0.01)),
           ratedKw: maybe(step(1, 200, 0.1)),
         }),
       ),
