@@ -93,29 +93,32 @@ function hoursOn(trace: Trace | undefined, date: string): number {
 }
 
 describe('the product reads the sample logs as DuckDB does', () => {
-  it.each(Object.keys(ASKED))('%s: the plan found says what the file says; daily sums within 0.1 percent', async (name) => {
-    const { asks, sql } = ASKED[name];
-    const dates = (await duck(sql('straight'))).map((row) => String(row.day));
-    const { plan, result, days, traces } = await take(name, dates);
-    expect(meaning(plan)).toEqual(meaning(PLANS[name]));
-    expect(plan.delimiter).toBe(PLANS[name].delimiter);
-    expect(plan.decimal).toBe(PLANS[name].decimal);
-    expect(result.rows.rejected).toBe(0);
-    expect(result.rows.accepted).toBe(result.rows.read);
-    // A power between two rows is taken as the plan's stamp says; the query is asked accordingly.
-    const rows = await duck(sql(plan.time.stamp === 'instant' ? 'straight' : 'held'));
-    expect(rows.length).toBeGreaterThan(3);
-    for (const row of rows) {
-      const date = String(row.day);
-      const day = days.get(date);
-      for (const ask of asks) {
-        const theirs = Number(row[ask]);
-        const ours = ask === 'relayHours' ? hoursOn(traces.get('relay'), date) : day && FIGURE[ask](day);
-        expect(ours, `${date} ${ask}`).not.toBeNull();
-        expect(Math.abs(Number(ours) - theirs), `${date} ${ask}: ${ours} against ${theirs}`).toBeLessThanOrEqual(
-          0.001 * Math.abs(theirs) + 1e-6,
-        );
+  it.each(Object.keys(ASKED))(
+    '%s: the plan found says what the file says; daily sums within 0.1 percent',
+    async (name) => {
+      const { asks, sql } = ASKED[name];
+      const dates = (await duck(sql('straight'))).map((row) => String(row.day));
+      const { plan, result, days, traces } = await take(name, dates);
+      expect(meaning(plan)).toEqual(meaning(PLANS[name]));
+      expect(plan.delimiter).toBe(PLANS[name].delimiter);
+      expect(plan.decimal).toBe(PLANS[name].decimal);
+      expect(result.rows.rejected).toBe(0);
+      expect(result.rows.accepted).toBe(result.rows.read);
+      // A power between two rows is taken as the plan's stamp says; the query is asked accordingly.
+      const rows = await duck(sql(plan.time.stamp === 'instant' ? 'straight' : 'held'));
+      expect(rows.length).toBeGreaterThan(3);
+      for (const row of rows) {
+        const date = String(row.day);
+        const day = days.get(date);
+        for (const ask of asks) {
+          const theirs = Number(row[ask]);
+          const ours = ask === 'relayHours' ? hoursOn(traces.get('relay'), date) : day && FIGURE[ask](day);
+          expect(ours, `${date} ${ask}`).not.toBeNull();
+          expect(Math.abs(Number(ours) - theirs), `${date} ${ask}: ${ours} against ${theirs}`).toBeLessThanOrEqual(
+            0.001 * Math.abs(theirs) + 1e-6,
+          );
+        }
       }
-    }
-  });
+    },
+  );
 });
