@@ -529,6 +529,6 @@ describe('DELETE /api/logs/:id', () => {
 /** supertest gives bytes only if it is told how. */
 const binary: Parameters<Test['parse']>[0] = (res: Response, done: (error: Error | null, body: Buffer) => void) => {
   const parts: Buffer[] = [];
-  stream.on('data', (part: Buffer) => parts.push(part));
-  stream.on('end', () => done(null, Buffer.concat(parts)));
+  res.on('data', (part: Buffer) => parts.push(part));
+  res.on('end', () => done(null, Buffer.concat(parts)));
 };
