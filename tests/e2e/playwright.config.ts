@@ -10,7 +10,9 @@ export default defineConfig({
   outputDir: '../../test-results',
   workers: 1,
   forbidOnly: Boolean(process.env.CI),
-  timeout: 60_000,
+  // A slow machine is no fault of the product: nothing here measures time.
+  timeout: 180_000,
+  expect: { timeout: 30_000 },
   use: {
     ...devices['Desktop Chrome'],
     baseURL: process.env.E2E_URL,
