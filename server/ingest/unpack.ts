@@ -5,7 +5,7 @@ import { LogRefused } from '../../shared/columns/refusal.ts';
 /** A zip file is read from its end, so it is held whole; larger ones are refused. */
 const MAX_ZIP = 256 * 1024 * 1024;
 /** Readings pack to a twentieth or so; what unpacks to more than this many times its size is no log. */
-const MAX_RATIO = 250;
+const MAX_RATIO = 100;
 /** Below this size the ratio does not matter. */
 const SMALL = 64 * 1024 * 1024;
 

@@ -157,14 +157,15 @@ export class NumberReader {
     }
     if (!new RegExp(`^(?:\\d+(?:${mark}\\d*)?|${mark}\\d+)$`).test(plain)) return false;
     const [whole, fraction = ''] = plain.split(this.decimalCode === 46 ? '.' : ',');
-    const digits = (whole + fraction).replace(/^0+(?=\d)/, '');
+    let digits = (whole + fraction).replace(/^0+(?=\d)/, '');
     const negative = sign === '-' || sign === '−';
     let decimals = fraction.length - Number(exponent ?? 0);
-    let mantissa = Number(digits);
-    while (decimals > MAX_SCALE && mantissa % 10 === 0 && mantissa !== 0) {
-      mantissa /= 10;
+    // Zeros at the end say nothing of the value; they are taken off as digits, since a number so long may be rounded.
+    while (decimals > MAX_SCALE && digits.length > 1 && digits.endsWith('0')) {
+      digits = digits.slice(0, -1);
       decimals--;
     }
+    let mantissa = Number(digits);
     if (mantissa === 0) decimals = Math.min(Math.max(decimals, 0), MAX_SCALE);
     if (decimals < 0 && decimals >= -22) {
       mantissa *= POWER10[-decimals];

@@ -212,10 +212,13 @@ const none = (series: Series, reason: string, confidence = 0.9): Proposal => ({
 /** The means to ask about a series that says too little of itself. */
 function unknown(series: Series, channels: readonly Channel[], about: string): Proposal {
   const options = channels.flatMap((channel) => {
-    const [form] = forms(series, channel);
-    if (!form) return [];
     const { sign } = signOf(series, channel);
-    return [{ column: column(series, channel, form.kind, form.unit, sign), reason: `${channel} in ${form.unit}` }];
+    // Without a unit there is more than one thing that a channel's numbers can be.
+    const ways = forms(series, channel).slice(0, series.words.unit === null ? 2 : 1);
+    return ways.map(({ kind, unit }) => ({
+      column: column(series, channel, kind, unit, sign),
+      reason: kind === 'register' ? `${channel}, a counter in ${unit}` : `${channel} in ${unit}`,
+    }));
   });
   return { series, options, confidence: 0.2, reason: about, question: options.length > 0 ? about : null };
 }

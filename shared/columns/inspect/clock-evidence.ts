@@ -145,7 +145,7 @@ function inLight(
   evidence.groups.forEach((times, g) => {
     const values = (evidence.light as Float64Array[])[g];
     times.forEach((local, i) => {
-      if (!(values[i] > peak * 0.01)) return;
+      if (local !== local || !(values[i] > peak * 0.01)) return;
       const [utc] = zone.localToUtc(local);
       if (utc === undefined) return;
       const day = Math.floor((utc + (longitude / 15) * HOUR_MS) / DAY_MS);

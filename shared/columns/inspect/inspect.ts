@@ -19,6 +19,7 @@ import { isBlank, recordsOf, type SampleRow, type TextSample } from './sample.ts
 import { isCounter, type Series, seriesOf } from './series.ts';
 import { sectionsOf, type Shape, shapeOf } from './shape.ts';
 import { columnRefs, findDecimals, findDelimiter, findHeading, type Heading } from './table.ts';
+import type { Pace } from './times.ts';
 import { chooseTime, inGroups, timeColumns, type TimeChoice } from './time-columns.ts';
 import { headingWords, isUnit } from './words.ts';
 
@@ -218,23 +219,23 @@ function changesAcross(
 }
 
 /** Whether rows come only when something changes: steps of all lengths, and no value twice in a row. */
-function onChange(series: Series, regular: number): boolean {
+function onChange(series: Series, { regular, spread }: Pace): boolean {
   const { rises, falls, restarts, levelSteps } = series.facts;
   const moves = rises + falls + restarts;
-  return regular < 0.3 && moves + levelSteps >= 3 && levelSteps <= moves * 0.1;
+  return regular < 0.3 && spread >= 4 && moves + levelSteps >= 3 && levelSteps <= moves * 0.1;
 }
 
 /** Whether a series has no rows at night, night after night, with next to nothing before and after. */
-function sleepsInDark(series: Series, stepMs: number): boolean {
+function sleepsInDark(series: Series, stepMs: number, shownAt: (time: number) => number): boolean {
   let nights = 0;
   const high = series.facts.greatest;
   series.times.forEach((times, g) => {
     for (let i = 1; i < times.length; i++) {
       const gap = times[i] - times[i - 1];
-      if (gap < Math.max(4 * 3_600_000, 6 * stepMs) || gap > 20 * 3_600_000) continue;
-      const middle = ((times[i] + times[i - 1]) / 2) % DAY_MS;
+      if (!(gap >= Math.max(4 * 3_600_000, 6 * stepMs) && gap <= 20 * 3_600_000)) continue;
+      const middle = shownAt((times[i] + times[i - 1]) / 2) % DAY_MS;
       if (Math.abs(middle - DAY_MS / 2) < 5 * 3_600_000) continue;
-      if (Math.max(series.values[g][i], series.values[g][i - 1]) <= high * 0.1) nights++;
+      if (Math.max(series.values[g][i], series.values[g][i - 1]) <= high * 0.2) nights++;
     }
   });
   return nights >= 3;
@@ -311,10 +312,10 @@ function signByNight(proposal: Proposal, zone: string, zoned: boolean, ctx: Insp
   let down = 0;
   proposal.series.times.forEach((times, g) =>
     times.forEach((time, i) => {
-      const local = zoned ? time + clock.offsetAt(time) : time;
+      const local = zoned && time === time ? time + clock.offsetAt(time) : time;
       const hour = Math.floor((((local % DAY_MS) + DAY_MS) % DAY_MS) / 3_600_000);
       if (hour >= 4) return;
-      const value = proposal.series.values[g][i];
+      const value = time === time ? proposal.series.values[g][i] : NaN;
       if (value > 0) up++;
       else if (value < 0) down++;
     }),
@@ -383,6 +384,8 @@ export function inspectSample(sample: TextSample, ctx: InspectContext, given?: C
   const questions: Question[] = [];
 
   const proposals = seriesIn(found, refs).map(propose);
+  const own = zoneOf(ctx.timeZone);
+  const shownAt = (at: number): number => (time.zoned || time.epoch ? at + own.offsetAt(at) : at);
   const known = proposals.some(({ confidence, options }) => options.length > 0 && confidence >= 0.6);
   for (const proposal of proposals) {
     // Columns that say nothing of themselves are asked about only where nothing else is known.
@@ -392,11 +395,11 @@ export function inspectSample(sample: TextSample, ctx: InspectContext, given?: C
     }
     const [option] = proposal.options;
     if (!option) continue;
-    if (onChange(proposal.series, time.pace.regular)) {
+    if (onChange(proposal.series, time.pace)) {
       for (const { column } of proposal.options) column.hold = 'toNext';
       proposal.reason += '; it is logged when it changes, so a value holds until the next row';
     }
-    if (option.column.channel === 'generation' && sleepsInDark(proposal.series, time.pace.step)) {
+    if (option.column.channel === 'generation' && sleepsInDark(proposal.series, time.pace.step, shownAt)) {
       for (const { column } of proposal.options) column.sleeps = 'dark';
       proposal.reason += '; it has no rows at night, when there is nothing to log';
     }
@@ -578,6 +581,11 @@ export function inspectSample(sample: TextSample, ctx: InspectContext, given?: C
     reason: `time, read as ${time.format}: ${time.reason}; zone ${clock.zone}: ${clock.reason}; ${stamp.reason}`,
   }));
   const inspection = previewOf(sample, plan, questions, confidence, [...timeReadings, ...readings]);
+  // A plan of our own that the file cannot be read by is none.
+  if (inspection.confidence === 0) {
+    const [{ reason, line }] = inspection.problems;
+    return withReadings(noLog(reason, line), readings);
+  }
   inspection.problems.push(...notes);
   return inspection;
 }

@@ -137,6 +137,8 @@ export interface Pace {
   regular: number;
   /** The sum of all steps' lengths over that of the whole span: 1 for a file in order. */
   wander: number;
+  /** The ninth tenth of steps over the first: 1 for an even file, large where rows come when something happens. */
+  spread: number;
   /** The share of the span that the usual step would fill with as many rows. */
   filled: number;
   /** 1 oldest first, -1 newest first, 0 neither. */
@@ -175,10 +177,16 @@ export function paceOf(groups: readonly Float64Array[]): Pace {
     }
   }
   const [step, count] = [...counts].sort((a, b) => b[1] - a[1] || a[0] - b[0])[0] ?? [0, 0];
+  const ordered = [...counts].sort((a, b) => a[0] - b[0]);
+  const tenth = (share: number): number => {
+    let seen = 0;
+    return ordered.find(([, n]) => (seen += n) >= share * total)?.[0] ?? 0;
+  };
   const way = ups > 0.9 * total && total > 0 ? 1 : downs > 0.9 * total && total > 0 ? -1 : 0;
   return {
     step,
     regular: total === 0 ? 0 : count / total,
+    spread: total === 0 ? 1 : tenth(0.9) / Math.max(tenth(0.1), 1),
     wander: high > low ? length / (high - low) : 1,
     filled: high > low ? Math.min(1, (step * (distinct.size - 1)) / (high - low)) : 1,
     way,

@@ -181,7 +181,10 @@ export function headingWords(heading: string, unitCell = ''): HeadingWords {
         ...inside.split(/[\s,;/]+/),
       ]),
       heading.split(/[\s_,;:]+/).at(-1) ?? '',
-      ...heading.split(/[\s_,;:([{)\]}/.-]+/).reverse(),
+      ...heading
+        .replace(/([\p{Ll}\d])(\p{Lu}\p{Ll})/gu, '$1 $2')
+        .split(/[\s_,;:([{)\]}/.-]+/)
+        .reverse(),
     ];
     for (const part of parts) {
       unit = unitOf(part);

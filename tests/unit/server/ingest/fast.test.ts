@@ -79,6 +79,8 @@ const tables: fc.Arbitrary<Case> = fc
               '+7',
               '"8"',
               '1234567890123456',
+              '98765432109876543',
+              '0.12345678901234567',
               '--3',
               '1.2.3',
               ' 4 ',
@@ -91,7 +93,7 @@ const tables: fc.Arbitrary<Case> = fc
         ),
         fc.oneof(
           { weight: 8, arbitrary: fc.nat(9).map(String) },
-          { weight: 1, arbitrary: fc.constantFrom('', '"a\nb"', '"', 'é', 'n/a') },
+          { weight: 1, arbitrary: fc.constantFrom('', '"a\nb"', '"1,2;3|4\t5"', '"', 'é', 'n/a') },
         ),
       ),
       { minLength: 1, maxLength: 80 },
@@ -193,5 +195,32 @@ describe('the fast path', { timeout: 120_000 * MORE }, () => {
     });
     const text = [[...time.columns, 'a', 'b'].join(';'), ...rows].join('\n') + '\n';
     expect(await same({ text, plan }, 1000)).toBeGreaterThanOrEqual(499);
+  });
+
+  it('tells the way of a file by the row before a repeated hour, also where it took that row itself', async () => {
+    const text = 't,a\n2026-12-01T00:00,0\n2026-10-20T00:00,1\n2026-10-25T01:30,2\n2026-10-25T01:00,3\n';
+    const plan = planOf({
+      time: { columns: ['t'], format: 'iso', zone: 'Europe/London', stamp: 'start' },
+      columns: [{ column: 'a', channel: 'export', kind: 'power', unit: 'W', sign: 1 }],
+    });
+    for (const choice of ['best', 'general'] as const) {
+      const { readings, result } = await read(text, plan, { choice });
+      const times = readings[0].map(([at]) => new Date(at).toISOString().slice(0, 16));
+      expect(times.slice(0, 3)).toEqual(['2026-10-19T23:00', '2026-10-25T00:30', '2026-10-25T01:00']);
+      expect(result.problems).toEqual([]);
+      expect(result.fastRows).toBe(choice === 'best' ? 1 : 0);
+    }
+  });
+
+  it('leaves a quote in a column that is not kept to the general reader, since it may run over lines', async () => {
+    const at = (minute: number): string => `2026-06-01T00:0${minute}Z`;
+    const text = `t,note,a\n${at(0)},x,0\n${at(1)},"x,1\n${at(2)},y",2\n${at(3)},z,3\n`;
+    const plan = planOf({
+      time: { columns: ['t'], format: 'iso', zone: 'UTC', stamp: 'start' },
+      columns: [{ column: 'a', channel: 'export', kind: 'power', unit: 'W', sign: 1 }],
+    });
+    await same({ text, plan }, 1000);
+    const { readings } = await read(text, plan);
+    expect(readings[0].map(([, value]) => value)).toEqual([0, 2, 3]);
   });
 });
