@@ -5,7 +5,6 @@ import { defineConfig } from 'vitest/config';
 /** Tests that need a database get one from these; see tests/support/database.ts. */
 const onDatabase = {
   globalSetup: ['tests/support/template.ts'],
-  testTimeout: 30_000,
   hookTimeout: 60_000,
 };
 
@@ -26,6 +25,8 @@ export default defineConfig({
   },
   test: {
     maxWorkers: 2,
+    // Property tests run thousands of cases; a slow machine is no fault of theirs.
+    testTimeout: 30_000,
     coverage: {
       include: ['shared/**/*.ts', 'server/**/*.ts', 'src/**/*.{ts,vue}'],
       reporter: ['text-summary', 'html'],
